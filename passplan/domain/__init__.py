@@ -1,0 +1,1 @@
+"""The nouns: frozen, checked at birth; no files, no clock, no solver."""

@@ -1,0 +1,166 @@
+"""What is wanted of the week: commands to send and payload sessions to run."""
+
+from dataclasses import dataclass, replace
+from datetime import datetime, timedelta
+from typing import Annotated, Literal
+
+from annotated_types import Interval
+
+from passplan.domain.checked import (
+    Checked,
+    Elevation,
+    Fraction,
+    NotNegative,
+    text_fault,
+)
+from passplan.domain.moments import Horizon, aware_faults
+from passplan.domain.satellite import Weight
+
+Order = Literal["after", "after_ack", "after_contact"]
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class After(Checked):
+    """This command goes up only after another one.
+
+    Attributes:
+        command: the other one's name.
+        order: "after" (same window allowed), "after_ack" (same window allowed, only
+            once the reply was heard) or "after_contact" (in a later contact).
+    """
+
+    command: str
+    order: Order = "after_ack"
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Command(Checked):
+    """One command, or one that returns each day.
+
+    Attributes:
+        satellite: whom it is for.
+        exchange_s: seconds of the whole exchange, reply and expected repeats included;
+            None works it out from `length_byte`.
+        length_byte: octets of the command itself.
+        earliest_utc, deadline_utc: the whole exchange lies between; None = the week.
+        must: it has no worth, it has to go; urgent musts also go as early as they can.
+        worth: low 100, normal 300, high 1000, or a number, when it is not a must.
+        after: other commands that have to be up before.
+        least_charge_fraction: battery charge where its contact begins, of the capacity.
+        every_day: it is wanted once each day of the week (UTC), named with the date.
+        stations: codes allowed; empty = every transmitting station.
+        two_people: two operators at the contact.
+    """
+
+    name: str
+    satellite: str
+    exchange_s: Annotated[float, Interval(gt=0.0, le=3600.0)] | None = None
+    length_byte: Annotated[int, Interval(ge=1, le=1_000_000)] = 64
+    earliest_utc: datetime | None = None
+    deadline_utc: datetime | None = None
+    must: bool = False
+    urgent: bool = False
+    worth: Weight | Annotated[float, Interval(ge=0.0, le=1e6)] = "normal"
+    after: tuple[After, ...] = ()
+    least_elevation_deg: Elevation | None = None
+    least_charge_fraction: Fraction | None = None
+    every_day: bool = False
+    stations: tuple[str, ...] = ()
+    two_people: bool = False
+
+    def _faults(self) -> list[tuple[str, object, str]]:
+        faults = text_fault("name", self.name) + aware_faults(self, "earliest_utc", "deadline_utc")
+        if self.urgent and not self.must:
+            faults.append(("urgent", self.urgent, "only a must can be urgent; add must = true"))
+        return faults
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Window(Checked):
+    """A stretch of UTC time; a session lies wholly inside one."""
+
+    begin_utc: datetime
+    end_utc: datetime
+
+    def _faults(self) -> list[tuple[str, object, str]]:
+        return aware_faults(self, "begin_utc", "end_utc")
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Session(Checked):
+    """One run of the payload; the planner decides whether and when in its windows.
+
+    Attributes:
+        length_s: how long it runs.
+        draw_w: what it adds to the bus load.
+        makes: bytes it makes by kind of data.
+        worth: low 100, normal 300, high 1000, or a number.
+        grid_s: starts are tried every so many seconds of a window.
+    """
+
+    name: str
+    satellite: str
+    windows: tuple[Window, ...]
+    length_s: Annotated[float, Interval(gt=0.0, le=86_400.0)]
+    draw_w: NotNegative
+    makes: dict[str, NotNegative]
+    worth: Weight | Annotated[float, Interval(ge=0.0, le=1e6)] = "normal"
+    grid_s: Annotated[float, Interval(ge=10.0, le=86_400.0)] = 600.0
+
+    def _faults(self) -> list[tuple[str, object, str]]:
+        faults = text_fault("name", self.name)
+        if not self.windows:
+            faults.append(("windows", "", "give at least one window"))
+        return faults
+
+
+def occurrences(commands: tuple[Command, ...], horizon: Horizon) -> tuple[Command, ...]:
+    """Return the commands of one horizon: those of every day once a day, the rest as they are.
+
+    A daily command becomes one for each UTC day of the week and the look-ahead, named
+    "clock 2026-12-07"; of another daily one it depends on that of the same day. A day's
+    one outside its own [earliest, deadline] is left out.
+    """
+    daily = {command.name for command in commands if command.every_day}
+    days = range(int(-(-horizon.end_s // 86_400)))
+    result: list[Command] = []
+    for command in commands:
+        if not command.every_day:
+            plain = tuple(link for link in command.after if link.command not in daily)
+            dated = [link for link in command.after if link.command in daily]
+            first = {link: _first_day(command, horizon) for link in dated}
+            named = tuple(replace(link, command=_dated(link.command, horizon, first[link])) for link in dated)
+            result.append(replace(command, after=plain + named))
+            continue
+        for day in days:
+            begin = horizon.utc(day * 86_400.0)
+            earliest = max(filter(None, (begin, command.earliest_utc)))
+            deadline = min(filter(None, (begin + timedelta(days=1), command.deadline_utc)))
+            if deadline > earliest:
+                after = tuple(
+                    replace(link, command=_dated(link.command, horizon, day)) if link.command in daily else link
+                    for link in command.after
+                )
+                result.append(
+                    replace(
+                        command,
+                        name=_dated(command.name, horizon, day),
+                        earliest_utc=earliest,
+                        deadline_utc=deadline,
+                        every_day=False,
+                        after=after,
+                    )
+                )
+    return tuple(result)
+
+
+def _first_day(command: Command, horizon: Horizon) -> int:
+    """Return the day of the horizon in which a single command may first go."""
+    if command.earliest_utc is None:
+        return 0
+    return max(0, int(horizon.seconds(command.earliest_utc) // 86_400))
+
+
+def _dated(name: str, horizon: Horizon, day: int) -> str:
+    """Return a daily command's name on one day of the horizon."""
+    return f"{name} {horizon.utc(day * 86_400.0):%Y-%m-%d}"
