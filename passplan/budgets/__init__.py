@@ -1,0 +1,1 @@
+"""What a pass is worth and what it costs: link, data, energy, people; joined into a Problem."""
