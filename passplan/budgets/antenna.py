@@ -10,6 +10,7 @@ from passplan.domain.passes import Floats, Track
 from passplan.domain.station import Rotator, Station
 
 Follows = NDArray[np.bool_]
+MARGIN_DEG = 0.05  # kept by the planner, so that no second reading finds a contact on the beam's very edge
 
 
 def follows(station: Station, track: Track) -> Follows:
@@ -18,7 +19,8 @@ def follows(station: Station, track: Track) -> Follows:
     The rotator stands on the satellite at the first second and chases it: each axis turns
     towards where the satellite is now, at most at its rate. The azimuth may start at any
     turn inside its travel; where the satellite leaves the travel the axis has to go back
-    a whole turn. With flip the antenna may also lean over backwards all through the pass.
+    a whole turn. With flip the antenna may also lean over backwards, all through the pass
+    or from its highest second on, which takes it over the zenith with hardly a turn.
     Of these ways the one with the longest unbroken stretch is taken, then the one that
     follows most seconds, then the first: upright before leaning, low turns before high.
 
@@ -27,7 +29,7 @@ def follows(station: Station, track: Track) -> Follows:
     seconds = len(track.azimuth_deg)
     if station.rotator is None or seconds == 0:
         return np.ones(seconds, dtype=np.bool_)
-    allowed_deg = beam_width_deg(station) / 2.0
+    allowed_deg = beam_width_deg(station) / 2.0 - MARGIN_DEG
     best, best_rank = np.zeros(seconds, dtype=np.bool_), (-1, -1)
     for azimuth, elevation in _ways(station.rotator, track):
         place = (
@@ -57,13 +59,25 @@ def _ways(rotator: Rotator, track: Track) -> Iterator[tuple[Floats, Floats]]:
     upright = np.unwrap(track.azimuth_deg, period=360.0)
     branches = [(upright, track.elevation_deg)]
     if rotator.flip:
-        branches.append((upright + 180.0, 180.0 - track.elevation_deg))
+        leaning = (upright + 180.0, 180.0 - track.elevation_deg)
+        branches += [leaning, _over_the_top(upright, track.elevation_deg)]
     low, high = rotator.azimuth_from_deg, rotator.azimuth_to_deg
     for azimuth, elevation in branches:
         first = math.ceil((low - azimuth[0]) / 360.0)
         last = max(first, math.floor((high - azimuth[0]) / 360.0))
         for turn in range(first, last + 1):
             yield _within_travel(rotator, azimuth + 360.0 * turn), elevation
+
+
+def _over_the_top(azimuth_deg: Floats, elevation_deg: Floats) -> tuple[Floats, Floats]:
+    """Return the axes of a pass taken upright up to its highest second and leaning over from then on.
+
+    The half turn goes against the way the pass runs, so that the azimuth ends near where it began.
+    """
+    back = -math.copysign(180.0, azimuth_deg[-1] - azimuth_deg[0])
+    leaning = np.arange(len(azimuth_deg)) > np.argmax(elevation_deg)
+    azimuth = np.where(leaning, azimuth_deg + back, azimuth_deg)
+    return azimuth, np.where(leaning, 180.0 - elevation_deg, elevation_deg)
 
 
 def _within_travel(rotator: Rotator, azimuth_deg: Floats) -> Floats:
