@@ -57,7 +57,7 @@ class Ledger:
         return np.asarray(np.interp(np.asarray(seconds_s, dtype=np.float64), self.times_s, self.energy_j))
 
     @property
-    def lowest(self) -> tuple[float, float]:
+    def low_point(self) -> tuple[float, float]:
         """The second of the lowest charge, the first of equals, and that charge (J)."""
         corner = int(np.argmin(self.energy_j))
         return float(self.times_s[corner]), float(self.energy_j[corner])
@@ -161,6 +161,13 @@ def _leg(battery: Battery, span: PowerSpan, start_j: float) -> Sequence[tuple[fl
     full_s = span.start_s + (battery.capacity_j - start_j) / slope_w
     full = [(full_s, battery.capacity_j)] if span.start_s < full_s < span.end_s else []
     return [*full, (span.end_s, battery.capacity_j)]
+
+
+def lowest(
+    satellite: Satellite, shadows: Iterable[Span], start_s: float, end_s: float, start_j: float
+) -> float:
+    """Return the lowest charge (J) with no contact and no session; the arguments are `idle_ledger`'s."""
+    return idle_ledger(satellite, shadows, start_s, end_s, start_j).low_point[1]
 
 
 def carry_forward(
