@@ -1,0 +1,1 @@
+"""Files in, files out: TOML, element sets (TLE and OMM), plans."""
