@@ -1,6 +1,7 @@
 """What was decided for a week, as plain facts."""
 
 from dataclasses import dataclass, field
+from datetime import datetime
 from typing import Literal
 
 from passplan.domain.moments import Horizon
@@ -292,3 +293,11 @@ class Plan:
     def all_contacts(self) -> tuple[Contact, ...]:
         """Contacts of the week and of the look-ahead, in order."""
         return self.contacts + self.lookahead
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class IssuedPlan:
+    """One edition as it was handed out: the plan and the aware moment at which it was made."""
+
+    plan: Plan
+    made_utc: datetime

@@ -1,0 +1,294 @@
+"""Below the contacts: commands, sessions, data, battery, people, elements, steps and the verdict."""
+
+from passplan.domain.mission import Mission
+from passplan.domain.plan import CommandOutcome, Plan, StepReport
+from passplan.domain.verdict import Margin, Verdict
+from passplan.render.typeset import BROKEN, THIN, Column, Page
+from passplan.render.words import (
+    amount,
+    charge,
+    clock,
+    count,
+    day,
+    day_clock,
+    duration,
+    figure,
+    percent,
+    rule_name,
+    safe,
+    size,
+)
+
+_MOST_NAME = 28
+_SHOWN_MARGINS = 4
+
+# How much of each unit counts as plenty, so that margins of different kinds can be ordered.
+_PLENTY = {"s": 3600.0, "deg": 10.0, "dB": 6.0, "byte": 100_000.0, "J": 36_000.0, "duties": 4.0}
+
+
+def add_account(page: Page, plan: Plan, mission: Mission) -> None:
+    """Add every section that has something to say, in the order in which people ask."""
+    _commands(page, plan)
+    _sessions(page, plan)
+    _data(page, plan)
+    _people(page, plan)
+    page.line()
+    _battery(page, plan)
+    _silence(page, plan, mission)
+    _elements(page, plan)
+    _steps(page, plan)
+    _verdict(page, plan)
+
+
+def _commands(page: Page, plan: Plan) -> None:
+    placed = [each for each in plan.commands if each.placed]
+    missing = [each for each in plan.commands if not each.placed]
+    if placed:
+        page.heading("Commands placed")
+        moments = [_sent_s(plan, each) for each in placed]
+        ordered = sorted(zip(moments, placed, strict=True), key=lambda pair: (pair[0], pair[1].name))
+        utc = plan.horizon.utc
+        page.table(
+            [
+                Column(heading="", cells=tuple(safe(each.name) for _, each in ordered), least=_MOST_NAME),
+                Column(heading="", cells=tuple("must" if each.must else "" for _, each in ordered), rank=1),
+                Column(heading="", cells=tuple(safe(each.contact) for _, each in ordered)),
+                Column(heading="", cells=tuple(day(utc(at)) for at, _ in ordered), rank=2),
+                Column(heading="", cells=tuple(f"{clock(utc(at), seconds=True)} UTC" for at, _ in ordered)),
+            ]
+        )
+    if missing:
+        page.heading("Commands not placed")
+        widest = _label_width(safe(each.name) for each in missing)
+        for each in missing:
+            must = "a must; " if each.must else ""
+            page.items(safe(each.name), must + _reason(each), widest, BROKEN if each.must else "")
+
+
+def _reason(outcome: CommandOutcome) -> str:
+    """Return why a command is not placed."""
+    later = "left for next week, it goes up in the hours looked ahead" if outcome.left_for_next_week else ""
+    return safe("; ".join(filter(None, (later, outcome.reason)))) or "no reason was recorded"
+
+
+def _sent_s(plan: Plan, outcome: CommandOutcome) -> float:
+    """Return the second at which a placed command's slot begins."""
+    for contact in plan.all_contacts:
+        for slot in contact.slots:
+            if contact.id == outcome.contact and slot.command == outcome.name:
+                return slot.start_s
+    return 0.0
+
+
+def _sessions(page: Page, plan: Plan) -> None:
+    if not plan.sessions:
+        return
+    page.heading("Payload sessions")
+    widest = _label_width(safe(each.name) for each in plan.sessions)
+    for each in sorted(plan.sessions, key=lambda one: (one.start_s is None, one.start_s or 0, one.name)):
+        if each.start_s is None or each.end_s is None:
+            page.items(
+                safe(each.name), f"does not run: {safe(each.reason) or 'no reason was recorded'}", widest
+            )
+            continue
+        begin, end = plan.horizon.utc(each.start_s), plan.horizon.utc(each.end_s)
+        ahead = ", in the hours looked ahead" if each.in_lookahead else ""
+        page.items(safe(each.name), f"{day(begin)} {clock(begin)}-{clock(end)} UTC{ahead}", widest)
+
+
+def _data(page: Page, plan: Plan) -> None:
+    if not plan.data:
+        return
+    page.heading("Data, as expected with each contact's chance of success")
+    several = len({report.satellite for report in plan.data}) > 1
+    columns = [Column(heading="", cells=tuple(safe(report.kind) for report in plan.data), least=10)]
+    if several:
+        columns.append(
+            Column(heading="satellite", cells=tuple(safe(report.satellite) for report in plan.data), least=8)
+        )
+    weeks = tuple(_weeks(report.backlog_weeks, report.on_board_end_byte) for report in plan.data)
+    figures = (
+        ("at start", tuple(_some(report.on_board_start_byte) for report in plan.data), 2),
+        ("made", tuple(_some(report.made_byte) for report in plan.data), 3),
+        ("down", tuple(_some(report.down_byte) for report in plan.data), 0),
+        ("lost", tuple(_some(report.lost_byte) for report in plan.data), 1),
+        ("left", tuple(_some(report.on_board_end_byte) for report in plan.data), 0),
+        ("clears in", weeks, 0),
+    )
+    columns += [Column(heading=name, cells=cells, right=True, rank=rank) for name, cells, rank in figures]
+    page.table(columns)
+
+
+def _some(byte: float) -> str:
+    """Return an amount of data, "-" for none."""
+    return size(byte) if byte >= 0.5 else "-"
+
+
+def _weeks(backlog_weeks: float | None, left_byte: float) -> str:
+    """Return how long a backlog takes at this week's rate."""
+    if left_byte < 0.5:
+        return "-"
+    if backlog_weeks is None:
+        return "never"
+    return f"{backlog_weeks:.1f} weeks"
+
+
+def _people(page: Page, plan: Plan) -> None:
+    if not plan.shares:
+        return
+    page.heading("People")
+    page.table(
+        [
+            Column(heading="", cells=tuple(safe(share.operator) for share in plan.shares), least=10),
+            Column(heading="contacts", cells=tuple(f"{share.contacts}" for share in plan.shares), right=True),
+            Column(
+                heading="sittings",
+                cells=tuple(f"{share.sittings}" for share in plan.shares),
+                right=True,
+                rank=2,
+            ),
+            Column(
+                heading="on duty", cells=tuple(_minutes(share.duty_min) for share in plan.shares), right=True
+            ),
+            Column(
+                heading="at night",
+                cells=tuple(_minutes(share.night_min) for share in plan.shares),
+                right=True,
+            ),
+            Column(
+                heading="offered",
+                cells=tuple(_minutes(share.offered_min) for share in plan.shares),
+                right=True,
+                rank=1,
+            ),
+            Column(
+                heading="used of offered",
+                cells=tuple(
+                    percent(share.duty_min / share.offered_min) if share.offered_min > 0.0 else "-"
+                    for share in plan.shares
+                ),
+                right=True,
+                rank=3,
+            ),
+        ]
+    )
+
+
+def _minutes(minutes: float) -> str:
+    """Return minutes as a duration, "-" for none."""
+    return duration(60.0 * minutes) if minutes >= 0.5 else "-"
+
+
+def _battery(page: Page, plan: Plan) -> None:
+    for battery in plan.batteries:
+        whose = f" of {safe(battery.satellite)}" if len(plan.batteries) > 1 else ""
+        at = plan.horizon.utc(battery.lowest_s)
+        guess = ", assumed as there is no telemetry" if battery.start_assumed else ""
+        page.sentences(
+            f"Battery{whose}: lowest {charge(battery.lowest_fraction)} at {day_clock(at)} "
+            f"(floor {charge(battery.floor_fraction)});",
+            f"{charge(battery.start_fraction)} at the start{guess};",
+            f"{charge(battery.end_fraction)} at the end (wanted {charge(battery.end_wanted_fraction)}).",
+        )
+        if battery.floor_in_force_fraction < battery.floor_fraction:
+            page.sentences(
+                f"With no contact at all it would fall to {charge(battery.floor_in_force_fraction)}:",
+                "that is the floor in force.",
+                style=BROKEN,
+            )
+
+
+def _silence(page: Page, plan: Plan, mission: Mission) -> None:
+    limit_h = mission.planning.longest_silence_h
+    for silence in plan.silences:
+        whose = f" of {safe(silence.satellite)}" if len(plan.silences) > 1 else ""
+        begin, end = plan.horizon.utc(silence.from_s), plan.horizon.utc(silence.to_s)
+        said = (
+            f"Longest silence{whose} {duration(silence.to_s - silence.from_s)} (limit {limit_h:g} h), "
+            f"{day_clock(begin)} to {day_clock(end)}"
+        )
+        if silence.hours > limit_h:
+            page.sentences(
+                f"{said}: for longer than the limit nobody could silence the satellite.", style=THIN
+            )
+        else:
+            page.sentences(f"{said}.")
+
+
+def _elements(page: Page, plan: Plan) -> None:
+    for used in plan.elements:
+        number = "no catalogue number" if used.number is None else f"number {used.number}"
+        epoch = plan.horizon.utc(used.epoch_s)
+        old = " That is too old for good times; it was allowed for this plan." if used.old else ""
+        page.sentences(
+            f"Elements: {safe(used.name) or safe(used.satellite)}, {number},",
+            f"of {day(epoch)} {clock(epoch)} UTC,",
+            f"{used.farthest_days:.1f} days from the farthest contact,",
+            f"from {safe(used.source)}.{old}",
+            style=THIN if used.old else "",
+        )
+
+
+def _steps(page: Page, plan: Plan) -> None:
+    for name, given in plan.gives.items():
+        page.sentences(f"Gives: {safe(name)} {safe(given)}.")
+    if not plan.steps:
+        return
+    page.heading("Steps, each kept by the ones below it but for its give")
+    page.table(
+        [
+            Column(heading="", cells=tuple(safe(step.name) for step in plan.steps), least=30),
+            *(
+                Column(heading=heading, cells=_figures(plan.steps, heading), right=True, rank=rank)
+                for heading, rank in (("value", 1), ("bound", 3), ("give", 2), ("kept", 0))
+            ),
+            Column(heading="unit", cells=tuple(safe(step.unit) for step in plan.steps)),
+            Column(heading="proven", cells=tuple("yes" if step.proven else "no" for step in plan.steps)),
+        ]
+    )
+
+
+def _figures(steps: tuple[StepReport, ...], name: str) -> tuple[str, ...]:
+    """Return one figure of every step."""
+    return tuple(figure(float(getattr(step, name))) for step in steps)
+
+
+def _verdict(page: Page, plan: Plan) -> None:
+    page.line()
+    verdict = plan.verdict
+    if verdict is None:
+        page.sentences("Not checked by the second reading.", style=BROKEN)
+        return
+    for finding in verdict.findings:
+        name = rule_name(finding.rule)
+        page.sentences(f"Broken: {name}, {safe(finding.where)}: {safe(finding.sentence)}", style=BROKEN)
+    thinnest = sorted(verdict.margins, key=_tightness)[:_SHOWN_MARGINS]
+    margins = [_margin(margin, plan, verdict) for margin in thinnest]
+    ends = [","] * (len(margins) - 1) + ["."]
+    page.sentences(
+        f"Checked: {count(len(verdict.checked), 'rule')}" + ("; thinnest margins:" if margins else "."),
+        *(margin + end for margin, end in zip(margins, ends, strict=False)),
+    )
+    if verdict.shared:
+        page.sentences(
+            f"Both readings stand on {safe(verdict.shared)}: what it gets wrong, neither of them sees."
+        )
+
+
+def _tightness(margin: Margin) -> float:
+    """Return a margin as a share of what counts as plenty of its unit."""
+    return margin.value / _PLENTY.get(margin.unit, 1.0)
+
+
+def _margin(margin: Margin, plan: Plan, verdict: Verdict) -> str:
+    """Return "battery floor 11 % (Teasel-1)": charge in per cent, everything else in its unit."""
+    battery = next((each for each in plan.batteries if each.satellite == margin.where), None)
+    said = amount(margin.value, margin.unit)
+    if margin.rule.name == "BATTERY_FLOOR" and battery and margin.where in verdict.lowest_fraction:
+        said = charge(max(0.0, verdict.lowest_fraction[margin.where] - battery.floor_in_force_fraction))
+    return f"{rule_name(margin.rule)} {said} ({safe(margin.where)})"
+
+
+def _label_width(names: object) -> int:
+    """Return the width of the widest label, within reason."""
+    return min(_MOST_NAME, max((len(name) for name in names), default=0))  # type: ignore[attr-defined]
