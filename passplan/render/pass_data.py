@@ -43,6 +43,11 @@ def _moment(horizon: Horizon, second: float) -> str:
     return iso(horizon.utc(round(second, 3)))
 
 
+def _span(horizon: Horizon, begin_s: float, end_s: float) -> dict[str, str]:
+    """Return a span of the week as two moments."""
+    return {"from_utc": _moment(horizon, begin_s), "to_utc": _moment(horizon, end_s)}
+
+
 def _rounded(value: float | None, digits: int) -> float | None:
     """Return a figure without the digits that only differ from machine to machine."""
     return None if value is None else round(value, digits)
@@ -51,7 +56,7 @@ def _rounded(value: float | None, digits: int) -> float | None:
 def _plain(value: Value) -> str | float | None:
     """Return a value as one cell of a CSV file."""
     if isinstance(value, list):
-        return " ".join(f"{span['from']}/{span['to']}" for span in value)
+        return " ".join(f"{span['from_utc']}/{span['to_utc']}" for span in value)
     if not isinstance(value, str):
         return value
     text = safe(value)
@@ -76,8 +81,9 @@ _FACTS: dict[str, Callable[[ListedPass, Horizon], Value]] = {
     "largest_range_rate_km_s": lambda each, _: _rounded(each.sight.largest_range_rate_km_s, 6),
     "largest_doppler_down_hz": lambda each, _: _rounded(each.doppler_down_hz, 1),
     "largest_doppler_up_hz": lambda each, _: _rounded(each.doppler_up_hz, 1),
-    "sunlit_utc": lambda each, horizon: [
-        {"from": _moment(horizon, begin), "to": _moment(horizon, end)} for begin, end in each.sight.sunlit
+    "sunlit": lambda each, horizon: [
+        {"from_utc": _moment(horizon, begin), "to_utc": _moment(horizon, end)}
+        for begin, end in each.sight.sunlit
     ],
     "clipped": lambda each, _: each.sight.clipped,
 }

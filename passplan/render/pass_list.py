@@ -9,7 +9,20 @@ from passplan.domain.mission import Mission
 from passplan.domain.moments import Horizon
 from passplan.domain.passes import Pass, Sky
 from passplan.render.typeset import THIN, Column, Page
-from passplan.render.words import clock, compass, count, day, day_clock, degrees, duration, safe, there, zone_of
+from passplan.render.words import (
+    clock,
+    compass,
+    count,
+    day,
+    day_clock,
+    degrees,
+    duration,
+    places,
+    safe,
+    there,
+    there_brief,
+    zone_of,
+)
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -27,7 +40,9 @@ class ListedPass:
     doppler_up_hz: float | None = None
 
 
-def passes_text(listed: Sequence[ListedPass], sky: Sky, mission: Mission, horizon: Horizon, width: int) -> Text:
+def passes_text(
+    listed: Sequence[ListedPass], sky: Sky, mission: Mission, horizon: Horizon, width: int
+) -> Text:
     """Return the passes as a list by day.
 
     Args:
@@ -40,8 +55,8 @@ def passes_text(listed: Sequence[ListedPass], sky: Sky, mission: Mission, horizo
     page = Page(width)
     names = sorted({each.sight.satellite for each in listed}) or [each.name for each in mission.satellites]
     stations = len({each.sight.station for each in listed})
-    what = f"{count(len(listed), 'pass', 'passes')} over {count(stations, 'station')}" if listed else "no passes"
-    page.sentences(f"Week {horizon.week}, {', '.join(map(safe, names))}: {what}")
+    found = f"{count(len(listed), 'pass', 'passes')} over {count(stations, 'station')}"
+    page.sentences(f"Week {horizon.week}, {', '.join(map(safe, names))}: {found if listed else 'no passes'}")
     for name, second in sorted(sky.propagation_end_s.items()):
         end = horizon.utc(second)
         page.sentences(
@@ -51,7 +66,8 @@ def passes_text(listed: Sequence[ListedPass], sky: Sky, mission: Mission, horizo
         )
     if listed:
         page.line()
-        page.table(_columns(listed, mission, horizon), groups=_days(listed, horizon))
+        if "there" in page.table(_columns(listed, mission, horizon), groups=_days(listed, horizon)):
+            page.sentences(places(mission, (each.sight.station for each in listed)))
     if any(each.sight.clipped for each in listed):
         page.line()
         page.sentences('"open" stands where a pass goes on beyond the time that was searched.')
@@ -78,23 +94,31 @@ def _columns(listed: Sequence[ListedPass], mission: Mission, horizon: Horizon) -
     def local_time(each: ListedPass) -> str:
         return there(horizon.utc(each.sight.aos_s), zone_of(mission, each.sight.station))
 
-    columns = [
+    def local_brief(each: ListedPass) -> str:
+        return there_brief(horizon.utc(each.sight.aos_s), zone_of(mission, each.sight.station))
+
+    texts = [
         Column(heading="", cells=cells(lambda each: clock(horizon.utc(each.sight.aos_s)))),
         Column(heading="", cells=cells(lambda each: safe(each.sight.station))),
-        Column(heading="there", cells=cells(local_time)),
-        Column(heading="minutes", cells=cells(lambda each: f"{each.sight.length_s / 60.0:.1f}"), right=True),
-        Column(heading="highest", cells=cells(lambda each: degrees(each.sight.max_elevation_deg)), right=True),
-        Column(heading="enters > leaves", cells=cells(_way)),
-        Column(heading="useful", cells=cells(_useful), right=True),
-        Column(heading="light", cells=cells(lambda each: _light(each.sight, horizon)), rank=1),
-        Column(heading="nearest", cells=cells(lambda each: f"{each.sight.tca_range_km:.0f} km"), right=True, rank=4),
-        Column(heading="Doppler down", cells=cells(lambda each: _shift(each.doppler_down_hz)), right=True, rank=2),
-        Column(heading="up", cells=cells(lambda each: _shift(each.doppler_up_hz)), right=True, rank=2),
+        Column(heading="there", cells=cells(local_time), brief=cells(local_brief), good=5),
     ]
     if several:
         names = cells(lambda each: safe(each.sight.satellite))
-        columns.insert(2, Column(heading="satellite", cells=names, good=12, least=9))
-    return columns
+        texts.insert(2, Column(heading="satellite", cells=names, good=12, least=9))
+    figures: tuple[tuple[str, Callable[[ListedPass], str], int], ...] = (
+        ("minutes", lambda each: f"{each.sight.length_s / 60.0:.1f}", 0),
+        ("highest", lambda each: degrees(each.sight.max_elevation_deg), 0),
+        ("useful", _useful, 0),
+        ("nearest", lambda each: f"{each.sight.tca_range_km:.0f} km", 4),
+        ("Doppler down", lambda each: _shift(each.doppler_down_hz), 2),
+        ("and up", lambda each: _shift(each.doppler_up_hz), 2),
+    )
+    minutes, highest, useful, *wide = (
+        Column(heading=heading, cells=cells(said), right=True, rank=rank) for heading, said, rank in figures
+    )
+    way = Column(heading="in > out", cells=cells(_way))
+    light = Column(heading="light", cells=cells(lambda each: _light(each.sight, horizon)), rank=1)
+    return [*texts, minutes, highest, way, useful, light, *wide]
 
 
 def _way(each: ListedPass) -> str:

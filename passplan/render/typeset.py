@@ -26,7 +26,8 @@ class Column:
             do not all have their good width.
         good: width at which it reads well; None takes the widest cell.
         least: narrowest useful width; None takes `good`.
-        brief: shorter cells that take the place of all of `cells` where these do not fit.
+        brief: shorter cells that take the place of all of `cells` where these do not fit;
+            with any `good` they do before a ranked column has to go.
     """
 
     heading: str
@@ -45,6 +46,8 @@ class Column:
     @property
     def comfortable(self) -> int:
         """Width wanted before anything of a higher rank has room."""
+        if self.brief and self.good is not None:
+            return self.narrowest
         return (
             self.natural if self.good is None else min(self.natural, max(self.good, cell_len(self.heading)))
         )
@@ -113,8 +116,8 @@ class Page:
         *,
         groups: Mapping[int, str] | None = None,
         styles: Mapping[int, str] | None = None,
-    ) -> None:
-        """Add a table.
+    ) -> set[str]:
+        """Add a table and return the headings of the columns that had to be brief.
 
         Args:
             columns: all of one length; those that do not fit are left out, highest rank first.
@@ -137,6 +140,7 @@ class Page:
                 _shortened(column.cells[number], width) for column, width in zip(kept, widths, strict=True)
             ]
             self.line(_row(cells, kept, widths), (styles or {}).get(number, ""))
+        return {column.heading for column in kept if column.brief and column.cells == column.brief}
 
     def text(self) -> Text:
         """Return the page; print it with no wrapping, or take `.plain`."""
@@ -155,17 +159,15 @@ def _laid_out(columns: Sequence[Column], width: int) -> tuple[list[Column], list
         gaps -= _GAP
     widths = [column.narrowest for column in kept]
     spare = width - gaps - sum(widths)
+    for wanted in ("comfortable", "natural"):
+        for number, column in enumerate(kept):
+            more = max(0, getattr(column, wanted) - widths[number])
+            more = 0 if column.brief and more > spare else min(more, spare)
+            widths[number] += more
+            spare -= more
     for number, column in enumerate(kept):
-        more = column.comfortable - widths[number]
-        if column.brief and more > spare:
-            kept[number] = replace(column, cells=column.brief, brief=(), good=None)
-            continue
-        widths[number] += max(0, min(more, spare))
-        spare -= max(0, min(more, spare))
-    for number, column in enumerate(kept):
-        more = max(0, min(column.natural - widths[number], spare))
-        widths[number] += more
-        spare -= more
+        if column.brief and widths[number] < column.natural:
+            kept[number] = replace(column, cells=column.brief)
     return kept, widths
 
 

@@ -5,7 +5,6 @@ from collections.abc import Callable, Sequence
 from rich.text import Text
 
 from passplan.domain.mission import Mission
-from passplan.domain.moments import place_name
 from passplan.domain.plan import Contact, Plan, SlotKind
 from passplan.render.contact_words import kinds_down, short_command, total_down
 from passplan.render.typeset import BROKEN, STRONG, THIN, Column, Page
@@ -17,9 +16,11 @@ from passplan.render.words import (
     day,
     degrees,
     percent,
+    places,
     safe,
     size,
     there,
+    there_brief,
     zone_of,
 )
 
@@ -120,7 +121,8 @@ def add_contacts(page: Page, contacts: Sequence[Contact], plan: Plan, mission: M
         today = day(plan.horizon.utc(contact.start_s))
         if today not in groups.values():
             groups[number] = today
-    page.table(_columns(contacts, plan, mission), groups=groups)
+    if "there" in page.table(_columns(contacts, plan, mission), groups=groups):
+        page.sentences(places(mission, (contact.station for contact in contacts)))
 
 
 def _columns(contacts: Sequence[Contact], plan: Plan, mission: Mission) -> list[Column]:
@@ -136,7 +138,7 @@ def _columns(contacts: Sequence[Contact], plan: Plan, mission: Mission) -> list[
             Column(heading="satellite", cells=tuple(safe(c.satellite) for c in contacts), least=10)
         )
     place = tuple(there(utc(c.start_s), zone_of(mission, c.station)) for c in contacts)
-    brief = tuple(_without_place(said, mission, c.station) for said, c in zip(place, contacts, strict=True))
+    brief = tuple(there_brief(utc(c.start_s), zone_of(mission, c.station)) for c in contacts)
     commands = tuple(tuple(short_command(name) for name in c.commands) for c in contacts)
     people = tuple(tuple(map(safe, c.operators)) for c in contacts)
     kinds = tuple(kinds_down(c) for c in contacts)
@@ -168,11 +170,6 @@ def _columns(contacts: Sequence[Contact], plan: Plan, mission: Mission) -> list[
 def _each(contacts: Sequence[Contact], said: Callable[[Contact], str]) -> tuple[str, ...]:
     """Return one cell for each contact."""
     return tuple(said(contact) for contact in contacts)
-
-
-def _without_place(said: str, mission: Mission, code: str) -> str:
-    """Return local time without its place, for a screen with no room for it."""
-    return said.removesuffix(place_name(zone_of(mission, code))).rstrip()
 
 
 def _seconds(contact: Contact, kind: SlotKind) -> str:

@@ -1,6 +1,7 @@
 """How sizes, times, directions and names are said, the same everywhere."""
 
 import math
+from collections.abc import Iterable
 from datetime import UTC, date, datetime
 
 from passplan.domain.mission import Mission
@@ -106,9 +107,20 @@ def stamp(moment: datetime) -> str:
 
 def there(moment: datetime, zone: str, *, seconds: bool = False) -> str:
     """Return local time with its place, "05:12 Dublin"; "11:47 Tue Auckland" where it is another day."""
+    return f"{there_brief(moment, zone, seconds=seconds)} {place_name(zone)}"
+
+
+def there_brief(moment: datetime, zone: str, *, seconds: bool = False) -> str:
+    """Return local time without its place: "05:12", or "11:47 Tue" where it is another day."""
     here = local(moment, zone)
-    other_day = "" if here.date() == moment.astimezone(UTC).date() else f"{weekday(here)} "
-    return f"{clock(here, seconds=seconds)} {other_day}{place_name(zone)}"
+    other_day = "" if here.date() == moment.astimezone(UTC).date() else f" {weekday(here)}"
+    return clock(here, seconds=seconds) + other_day
+
+
+def places(mission: Mission, codes: Iterable[str]) -> str:
+    """Return whose time is meant, in a sentence, for lists that only show hours."""
+    said = [f"{place_name(zone_of(mission, code))} at {safe(code)}" for code in sorted(set(codes))]
+    return f"Local time: {', '.join(said)}."
 
 
 def offset(moment: datetime, zone: str) -> str:
