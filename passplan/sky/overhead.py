@@ -1,0 +1,134 @@
+"""Passes as arrays, satellite by satellite: what is needed where there are too many for objects."""
+
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass, fields, replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from passplan.domain.elements import ElementSet
+from passplan.domain.moments import Horizon
+from passplan.domain.station import Station
+from passplan.sky.looks import looks, state
+from passplan.sky.nodes import POINTS
+from passplan.sky.propagate import Arc, arc, grids, step_s
+from passplan.sky.search import Stretches, stretches
+from passplan.sky.sites import Sites, sites
+
+Floats = NDArray[np.float64]
+Ints = NDArray[np.intp]
+Bools = NDArray[np.bool_]
+
+_BLOCK = 32  # stations searched at once, so that the work stays in the processor's cache
+_NO_INDEX, _NO_PLACE = np.zeros(0, dtype=np.intp), np.zeros(0)
+_NOTHING = Stretches(
+    row=_NO_INDEX, rise=_NO_PLACE, fall=_NO_PLACE, peak_row=_NO_INDEX, peak=_NO_PLACE, peak_sine=_NO_PLACE
+)
+
+
+@dataclass(frozen=True, kw_only=True, slots=True, eq=False)
+class Found:
+    """Passes of one satellite in order of station, then AOS; arrays of shape (m,).
+
+    Attributes:
+        satellite: its name.
+        station: index into the stations searched.
+        aos_s, tca_s, los_s: seconds of the week.
+        max_elevation_deg: at tca_s.
+        open_start, open_end: whether the pass is cut where the horizon, or the propagation, ends.
+    """
+
+    satellite: str
+    station: Ints
+    aos_s: Floats
+    tca_s: Floats
+    los_s: Floats
+    max_elevation_deg: Floats
+    open_start: Bools
+    open_end: Bools
+
+
+def passes_of(
+    elements: Mapping[str, ElementSet], stations: Sequence[Station], horizon: Horizon
+) -> Iterator[Found]:
+    """Yield the passes of each satellite over [0, horizon.end_s], satellites in order of name.
+
+    Args:
+        elements: satellite name to the element set to use.
+        stations: whose `horizon` lines count.
+        horizon: the week.
+    """
+    places = sites(stations)
+    grid = grids(horizon, 0.0)
+    for name in sorted(elements):
+        flown = arc(elements[name], grid(step_s(elements[name])))
+        yield found(name, flown, stations, places, horizon)
+
+
+def found(name: str, flown: Arc, stations: Sequence[Station], places: Sites, horizon: Horizon) -> Found:
+    """Return the passes of one satellite whose arc is known."""
+    end_s = horizon.end_s if flown.end_s is None else min(horizon.end_s, flown.end_s)
+    first, last = flown.node_range(0.0, end_s)
+    if flown.nodes < POINTS or last <= first:
+        return _culminated(name, flown, places, _NOTHING, end_s)
+    level_deg = np.array([min(low for _, low in station.horizon) for station in stations])
+    parts = []
+    for start in range(0, len(stations), _BLOCK):
+        block = slice(start, start + _BLOCK)
+        seen = stretches(flown, places.part(block), np.sin(np.radians(level_deg[block])), first, last)
+        parts.append(replace(seen, row=seen.row + start, peak_row=seen.peak_row + start))
+    seen = _chained(parts)
+    return _culminated(name, flown, places, seen, end_s)
+
+
+def _chained(parts: Sequence[Stretches]) -> Stretches:
+    """Return the stretches of several blocks of stations as one."""
+    if len(parts) == 1:
+        return parts[0]
+    names = [field.name for field in fields(Stretches)]
+    return Stretches(**{name: np.concatenate([getattr(part, name) for part in parts]) for name in names})
+
+
+def _culminated(name: str, flown: Arc, places: Sites, seen: Stretches, end_s: float) -> Found:
+    """Return stretches cut to [0, end_s], each with its highest point.
+
+    That is the highest culmination inside, or the higher end where there is none: a pass
+    cut by the horizon, or by a notch in the mask, may climb or sink all along.
+    """
+    rise_s, fall_s, peak_s = (
+        flown.start_s + flown.step_s * place for place in (seen.rise, seen.fall, seen.peak)
+    )
+    inside = (fall_s > 0.0) & (rise_s < end_s)
+    row, rise_s, fall_s = seen.row[inside], rise_s[inside], fall_s[inside]
+    aos_s, los_s = np.maximum(rise_s, 0.0), np.minimum(fall_s, end_s)
+    holder = _holders(row, aos_s, los_s, seen.peak_row, peak_s)
+    held = holder >= 0
+    each = np.arange(len(row))
+    ends = looks(places, np.concatenate((row, row)), *state(flown, np.concatenate((aos_s, los_s))))
+    order_of = np.concatenate((each, each, holder[held]))
+    moments = np.concatenate((aos_s, los_s, peak_s[held]))
+    heights = np.concatenate((ends.elevation_deg, np.degrees(np.arcsin(seen.peak_sine[held]))))
+    tca_s, highest = np.empty_like(aos_s), np.empty_like(aos_s)
+    rising = np.argsort(heights, kind="stable")
+    tca_s[order_of[rising]] = moments[rising]  # of several, the last written stays: the highest
+    highest[order_of[rising]] = heights[rising]
+    return Found(
+        satellite=name,
+        station=row,
+        aos_s=aos_s,
+        tca_s=tca_s,
+        los_s=los_s,
+        max_elevation_deg=highest,
+        open_start=rise_s <= 0.0,
+        open_end=fall_s >= end_s,
+    )
+
+
+def _holders(row: Ints, aos_s: Floats, los_s: Floats, peak_row: Ints, peak_s: Floats) -> Ints:
+    """Return the stretch each peak lies in, -1 where it was cut off, shape (p,)."""
+    if not len(row):
+        return np.full(len(peak_row), -1)
+    apart_s = 2.0 * (los_s.max() + np.abs(peak_s).max(initial=0.0)) + 1.0
+    holder = np.searchsorted(row * apart_s + aos_s, peak_row * apart_s + peak_s, side="right") - 1
+    fits = (holder >= 0) & (row[holder] == peak_row) & (peak_s <= los_s[holder])
+    return np.where(fits, holder, -1)
