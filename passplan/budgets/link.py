@@ -4,7 +4,7 @@ import math
 from statistics import NormalDist
 
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
+from numpy.typing import ArrayLike
 
 from passplan.budgets.framing import downlink_rate_byte_s
 from passplan.domain.constants import BOLTZMANN_DBW_K_HZ, REFERENCE_TEMPERATURE_K, SPEED_OF_LIGHT_KM_S
@@ -119,17 +119,6 @@ def uplink_margin_db(satellite: Satellite, station: Station, track: Track) -> Fl
 def uplink_ebn0_db(satellite: Satellite, station: Station, track: Track) -> Floats:
     """Return Eb/N0 at the satellite, shape (n,): its required value is met at the sensitivity."""
     return satellite_required_ebn0_db(satellite) + uplink_margin_db(satellite, station, track)
-
-
-def uplink_closes(satellite: Satellite, station: Station, track: Track) -> NDArray[np.bool_]:
-    """Return in which seconds the station may send and be heard, shape (n,).
-
-    The margin is met and the satellite stands above both least elevations; never at a
-    station that does not transmit.
-    """
-    least = max(station.least_receive_elevation_deg, station.least_transmit_elevation_deg)
-    heard = uplink_margin_db(satellite, station, track) >= station.radio.margin_db
-    return np.asarray(heard & (track.elevation_deg >= least) & station.radio.transmits)
 
 
 def bit_error_rate(modulation: Modulation, ebn0_db: ArrayLike) -> Floats:
