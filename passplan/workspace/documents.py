@@ -6,12 +6,13 @@ import stat
 import tomllib
 from dataclasses import dataclass, field
 from pathlib import Path
-from typing import Any, Literal
+from typing import Any, Literal, TypeAlias
 
 from passplan.domain.errors import InputError, Mistake
 
 Kind = Literal["mission", "satellite", "station", "operators", "commands"]
 Place = tuple[str | int, ...]
+Data: TypeAlias = Any  # what tomllib gives: tables, lists, texts, numbers, dates
 
 MOST_BYTE = 5_000_000  # a hand-written file is some kilobytes; more is a slip or a trap
 MOST_TEXT = 200
@@ -123,7 +124,9 @@ def _paths(folder: Path, mistakes: list[Mistake]) -> list[tuple[Kind, Path]]:
             mistakes.append(Mistake(f"{home}/", "", "", told))
             continue
         if not names:
-            mistakes.append(Mistake(f"{home}/", "", "", f"empty; add at least one {kind}, such as {home}/name.toml"))
+            mistakes.append(
+                Mistake(f"{home}/", "", "", f"empty; add at least one {kind}, such as {home}/name.toml")
+            )
         paths.extend((kind, path) for path in names)
     rest: tuple[tuple[Kind, str], ...] = (("operators", "operators.toml"), ("commands", "commands.toml"))
     paths.extend((kind, folder / name) for kind, name in rest if os.path.lexists(folder / name))

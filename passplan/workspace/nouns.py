@@ -7,26 +7,28 @@ ISO texts, lists may become tuples, and nothing is converted silently (no "12" f
 
 import difflib
 import json
-import math
-from dataclasses import is_dataclass
-from datetime import date, datetime, time
-from functools import cache
-from typing import Any, TypeVar, get_args, get_origin
+from collections.abc import Iterator
+from datetime import date, datetime
+from typing import Any, TypeVar
 
 from pydantic import TypeAdapter, ValidationError
 
 from passplan.domain.errors import FieldError, Mistake
-from passplan.workspace.documents import MOST_TEXT, Document, Place
-from passplan.workspace.wording import expected, hints_of
+from passplan.workspace.documents import MOST_TEXT, Data, Document, Place
+from passplan.workspace.mend import hidden_by, holds, inside, mended, noun_of
+from passplan.workspace.wording import Hint, expected, hints_of
 
 Noun = TypeVar("Noun")
 
 _FIRST_YEAR, _LAST_YEAR = 1990, 2200  # outside, sums of dates could leave what Python can hold
 _MOST_SHOWN = 60
+_MOST_ROUNDS = 4  # nouns stand at most four deep in one another
+
+Faults = dict[Place, tuple[object, str]]  # place to (offending value, what is allowed)
 
 
 def read_noun(
-    noun: type[Noun], data: object, document: Document, at: Place
+    noun: type[Noun], data: Data, document: Document, at: Place
 ) -> tuple[Noun | None, list[Mistake]]:
     """Return the noun a table describes, or None and what is wrong with it.
 
@@ -41,7 +43,7 @@ def read_noun(
     try:
         made = _adapter(noun).validate_json(_json(data), strict=True)
     except ValidationError as error:
-        faults = _merged(faults, _faults(noun, data, error))
+        faults = _all_faults(noun, data, error) | faults
     except RecursionError:
         return None, [Mistake(document.file, document.key(at), "", "nested too deeply")]
     mistakes = [
@@ -72,44 +74,62 @@ def nearest(word: str, known: list[str]) -> str:
     return f'; did you mean "{close[0]}"?' if close else ""
 
 
-Faults = dict[Place, tuple[object, str]]
+_ADAPTERS: dict[type, TypeAdapter[Any]] = {}
 
 
-@cache
 def _adapter(noun: type[Noun]) -> TypeAdapter[Noun]:
-    return TypeAdapter(noun)
+    """Return pydantic's reader of a noun, built once."""
+    if noun not in _ADAPTERS:
+        _ADAPTERS[noun] = TypeAdapter(noun)
+    return _ADAPTERS[noun]
 
 
-def _json(data: object) -> str:
+def _json(data: Data) -> str:
     """Return tables as JSON text; dates and times in ISO 8601 form, inf and nan kept to be refused."""
     return json.dumps(data, default=lambda value: value.isoformat())
 
 
-def _merged(first: Faults, second: Faults) -> Faults:
-    """Return both; where one place has two faults the first is told."""
-    return {**second, **first}
+def _all_faults(noun: type, data: Data, error: ValidationError) -> Faults:
+    """Return every fault, also those that pydantic sees only once the first ones are mended."""
+    faults = _faults(noun, data, error)
+    for _ in range(_MOST_ROUNDS):
+        places = list(faults)
+        try:
+            _adapter(noun).validate_json(_json(mended(noun, data, places)), strict=True)
+        except ValidationError as hidden:
+            more = {
+                (*at, *_split(name)): (value, allowed)
+                for at, name, value, allowed in _told_by_nouns(hidden)
+                if not hidden_by(allowed, name, places, at)
+            }
+            faults = more | faults
+        if len(faults) == len(places):
+            break
+    return faults
 
 
-def _text_faults(data: object, at: Place = ()) -> Faults:
+def _told_by_nouns(error: ValidationError) -> Iterator[tuple[Place, str, object, str]]:
+    """Yield (place of the noun, field, value, what is allowed) of what nouns say of themselves."""
+    for item in error.errors(include_url=False):
+        cause = item.get("ctx", {}).get("error")
+        if item["type"] == "value_error" and isinstance(cause, FieldError):
+            for name, value, allowed in cause.faults:
+                yield item["loc"], name, value, allowed
+
+
+def _text_faults(data: Data, at: Place = ()) -> Faults:
     """Return texts and names of keys that would upset a terminal or a calendar, and impossible years."""
+    faults: Faults = {}
     match data:
-        case dict():
-            parts: list[tuple[str | int, Any]] = list(data.items())
-            faults: Faults = {}
-            for key in data:
-                if told := _unfit(key):
+        case dict() | list():
+            for key, value in data.items() if isinstance(data, dict) else enumerate(data):
+                faults |= _text_faults(value, (*at, key))
+                if isinstance(key, str) and (told := _unfit(key)):
                     faults[*at, key] = ("", f"the key itself: {told}")
-        case list():
-            parts, faults = list(enumerate(data)), {}
-        case str() if data and (told := _unfit(data)):
-            return {at: (data, told)}
+        case str() if told := _unfit(data):
+            faults[at] = (data, told)
         case date() if not _FIRST_YEAR <= data.year <= _LAST_YEAR:
-            return {at: (data, f"a year from {_FIRST_YEAR} to {_LAST_YEAR}")}
-        case _:
-            return {}
-    for key, value in parts:
-        for place, fault in _text_faults(value, (*at, key)).items():
-            faults.setdefault(place, fault)
+            faults[at] = (data, f"a year from {_FIRST_YEAR} to {_LAST_YEAR}")
     return faults
 
 
@@ -122,63 +142,47 @@ def _unfit(text: str) -> str:
     return ""
 
 
-def _faults(noun: type, data: object, error: ValidationError) -> Faults:
+def _faults(noun: type, data: Data, error: ValidationError) -> Faults:
     """Return pydantic's findings by place, each told once and in our words."""
-    found: Faults = {}
+    found: Faults = {
+        (*at, *_split(name)): (value, allowed) for at, name, value, allowed in _told_by_nouns(error)
+    }
     for item in error.errors(include_url=False):
         place, hint, owner = _walk(noun, data, item["loc"])
-        cause = item.get("ctx", {}).get("error")
-        if item["type"] == "value_error" and isinstance(cause, FieldError):
-            for name, value, allowed in cause.faults:
-                found.setdefault((*place, *_split(name)), (value, allowed))
-        elif item["type"] == "missing":
-            told = f"missing; expected {expected(hint, str(place[-1]))}"
-            found.setdefault(place, ("", told))
+        if item["type"] == "value_error":
+            continue
+        if item["type"] == "missing":
+            found.setdefault(place, ("", f"missing; expected {expected(hint, str(place[-1]))}"))
         elif item["type"] == "unexpected_keyword_argument":
-            known = list(hints_of(owner)) if owner else []
-            told = "unknown key" + nearest(str(place[-1]), known)
-            found.setdefault(place, ("", told or "unknown key"))
+            known = [] if owner is None else list(hints_of(owner))
+            found.setdefault(place, ("", "unknown key" + nearest(str(place[-1]), known)))
         else:
             key = next((part for part in reversed(place) if isinstance(part, str)), "")
             found.setdefault(place, (item["input"], "expected " + expected(hint, key)))
     return found
 
 
-def _walk(noun: type, data: object, loc: Place) -> tuple[Place, Any, type | None]:
+def _walk(noun: type, data: Data, loc: Place) -> tuple[Place, Hint, type | None]:
     """Return how far pydantic's `loc` leads in the data, the hint there and the noun around it.
 
     pydantic adds the names of a union's branches to the path; the data know none
     of them, so the walk ends where the data end.
     """
     place: Place = ()
-    hint: Any = noun
+    hint: Hint = noun
     owner: type | None = None
     for part in loc:
         if not isinstance(data, dict | list):
             break
-        owner, hint = _inside(hint, part)
+        owner, hint = noun_of(hint), inside(hint, part)
         place = (*place, part)
-        try:
-            data = data[part]  # type: ignore[call-overload,index]
-        except (KeyError, IndexError, TypeError):
-            break
+        data = _at(data, part)
     return place, hint, owner
 
 
-def _inside(hint: Any, part: str | int) -> tuple[type | None, Any]:
-    """Return the noun that holds `part` (None for a list) and the hint of `part` in it."""
-    if is_dataclass(hint) and isinstance(hint, type):
-        return hint, hints_of(hint).get(str(part))
-    args = get_args(hint)
-    origin = get_origin(hint)
-    if origin is tuple and isinstance(part, int):
-        return None, args[0] if args[-1] is Ellipsis else args[min(part, len(args) - 1)]
-    if origin is dict:
-        return None, args[1]
-    for option in args:  # an optional noun, or a hint with limits around a list
-        if is_dataclass(option) or get_origin(option) in (tuple, dict):
-            return _inside(option, part)
-    return None, None
+def _at(data: Data, part: str | int) -> Data:
+    """Return one key or element, None where there is none."""
+    return data[part] if holds(data, part) else None
 
 
 def _split(name: str) -> Place:

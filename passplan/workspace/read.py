@@ -1,8 +1,9 @@
 """The workspace read into one Mission, or every mistake in it at once."""
 
+from collections.abc import Iterator
 from dataclasses import replace
 from pathlib import Path
-from typing import Any, TypeVar
+from typing import TypeVar
 
 from passplan.domain.errors import InputError, Mistake
 from passplan.domain.mission import Mission
@@ -10,13 +11,19 @@ from passplan.domain.people import Operator
 from passplan.domain.requests import Command, Session
 from passplan.domain.satellite import Satellite
 from passplan.domain.station import Station
-from passplan.workspace.documents import Document, documents
+from passplan.workspace.documents import Data, Document, Kind, Place, documents
 from passplan.workspace.nouns import nearest, read_noun
 from passplan.workspace.references import Entry, reference_mistakes
 
 Noun = TypeVar("Noun")
 
-# What a mission is made of but mission.toml does not hold.
+# A file that is one noun, and a file of [[tables]].
+WHOLE: dict[Kind, type] = {"mission": Mission, "satellite": Satellite, "station": Station}
+ROWS: dict[Kind, dict[str, type]] = {
+    "operators": {"operator": Operator},
+    "commands": {"command": Command, "session": Session},
+}
+# What a mission is made of and mission.toml does not hold.
 ELSEWHERE = ("satellites", "stations", "operators", "commands", "sessions")
 
 
@@ -26,26 +33,8 @@ def read_workspace(folder: Path) -> Mission:
     Raises:
         InputError: with every mistake of every file, in the order of files and lines.
     """
-    found, mistakes = documents(folder)
-    entries: list[Entry] = []
-    mission: Mission | None = None
-    for document in found:
-        match document.kind:
-            case "mission":
-                mission, wrong = _mission(document)
-                mistakes.extend(wrong)
-            case "satellite":
-                _add(Satellite, document.data, document, (), entries, mistakes)
-            case "station":
-                _add(Station, document.data, document, (), entries, mistakes)
-            case "operators":
-                _rows({"operator": Operator}, document, entries, mistakes)
-            case "commands":
-                _rows({"command": Command, "session": Session}, document, entries, mistakes)
-    main = next(document for document in found if document.kind == "mission") if mission else None
-    mistakes.extend(reference_mistakes(mission, main, entries, folder))
-    if mistakes or mission is None:
-        raise InputError(_in_order(mistakes, found))
+    entries = read_entries(folder)
+    (mission,) = _of(Mission, entries)
     return replace(
         mission,
         satellites=_of(Satellite, entries),
@@ -56,21 +45,32 @@ def read_workspace(folder: Path) -> Mission:
     )
 
 
-def _mission(document: Document) -> tuple[Mission | None, list[Mistake]]:
-    """Return mission.toml as a mission with nothing in it yet."""
-    data = {key: value for key, value in document.data.items() if key not in ELSEWHERE}
-    mission, mistakes = read_noun(Mission, data | {"satellites": [], "stations": []}, document, ())
-    for key in ELSEWHERE:
-        if key in document.data:
-            told = "not in this file; see satellites/, stations/, operators.toml and commands.toml"
-            mistakes.append(Mistake(document.file, document.key((key,)), "", told))
-    return mission, mistakes
+def read_entries(folder: Path) -> list[Entry]:
+    """Return every table of a workspace with the noun it became; the mission has only what its file holds.
+
+    Raises:
+        InputError: with every mistake of every file, in the order of files and lines.
+    """
+    found, mistakes = documents(folder)
+    entries: list[Entry] = []
+    for document in found:
+        for noun, at, data in _tables(document, mistakes):
+            made, wrong = read_noun(noun, data, document, at)
+            mistakes.extend(wrong)
+            named = data if isinstance(data, dict) else {}
+            entries.append(Entry(kind=noun, document=document, at=at, data=named, noun=made))
+    mistakes.extend(reference_mistakes(entries, folder))
+    if mistakes:
+        raise InputError(_in_order(mistakes, found))
+    return entries
 
 
-def _rows(
-    nouns: dict[str, type], document: Document, entries: list[Entry], mistakes: list[Mistake]
-) -> None:
-    """Read a file of [[tables]]: one noun each."""
+def _tables(document: Document, mistakes: list[Mistake]) -> Iterator[tuple[type, Place, Data]]:
+    """Yield (noun, place, table) of each noun a file should hold; note keys that lead nowhere."""
+    if document.kind in WHOLE:
+        yield WHOLE[document.kind], (), _without_elsewhere(document, mistakes)
+        return
+    nouns = ROWS[document.kind]
     for key, rows in document.data.items():
         if key not in nouns:
             told = f"unknown table{nearest(key, list(nouns))}"
@@ -80,16 +80,19 @@ def _rows(
             mistakes.append(Mistake(document.file, document.key((key,)), "", told))
         else:
             for number, row in enumerate(rows):
-                _add(nouns[key], row, document, (key, number), entries, mistakes)
+                yield nouns[key], (key, number), row
 
 
-def _add(
-    noun: type, data: Any, document: Document, at: tuple[str | int, ...], entries: list[Entry], mistakes: list[Mistake]
-) -> None:
-    """Read one noun and note where it stands."""
-    made, wrong = read_noun(noun, data, document, at)
-    mistakes.extend(wrong)
-    entries.append(Entry(kind=noun, document=document, at=at, data=data if isinstance(data, dict) else {}, noun=made))
+def _without_elsewhere(document: Document, mistakes: list[Mistake]) -> Data:
+    """Return the data of a whole file; of mission.toml as a mission with nothing in it yet."""
+    if document.kind != "mission":
+        return document.data
+    for key in ELSEWHERE:
+        if key in document.data:
+            told = "not in this file; see satellites/, stations/, operators.toml and commands.toml"
+            mistakes.append(Mistake(document.file, document.key((key,)), "", told))
+    kept = {key: value for key, value in document.data.items() if key not in ELSEWHERE}
+    return kept | {"satellites": [], "stations": []}
 
 
 def _of(kind: type[Noun], entries: list[Entry]) -> tuple[Noun, ...]:
@@ -102,8 +105,7 @@ def _in_order(mistakes: list[Mistake], found: list[Document]) -> list[Mistake]:
     order = {document.file: number for number, document in enumerate(found)}
 
     def place(mistake: Mistake) -> tuple[int, int]:
-        _, _, rest = mistake.key.rpartition("line ")
-        line = rest.rstrip(")").partition(",")[0]
+        line = mistake.key.rpartition("line ")[2].rstrip(")").partition(",")[0]
         return order.get(mistake.file, -1), int(line) if line.isdigit() else 0
 
     return sorted(mistakes, key=place)

@@ -6,12 +6,14 @@ aloud, for mistakes, for assumed values and for the hover texts of editors.
 
 import dataclasses
 import types
-from collections.abc import Iterable
 from datetime import date, datetime, time
 from functools import cache
-from typing import Annotated, Any, Literal, Union, get_args, get_origin, get_type_hints
+from types import NoneType
+from typing import Annotated, Any, Literal, TypeAlias, Union, get_args, get_origin, get_type_hints
 
 from annotated_types import Interval
+
+Hint: TypeAlias = Any  # the type hint of a field, or a part of one
 
 # The end of a key to (words after "a number", sign after a figure).
 UNITS = {
@@ -74,44 +76,67 @@ def hints_of(noun: type) -> dict[str, Any]:
     return {field.name: hints[field.name] for field in dataclasses.fields(noun)}
 
 
-def expected(hint: Any, key: str = "") -> str:
+def expected(hint: Hint, key: str = "") -> str:
     """Return what a value of this type hint must look like, in words.
 
     Args:
         hint: from `hints_of`, or a part of one.
         key: the key's name, for its unit.
     """
-    bare, limits = _bare(hint)
-    origin = get_origin(bare)
+    bare, limits = bare_hint(hint)
+    origin = origin_of(bare)
     if origin in (Union, types.UnionType):
-        # Two number parts of one union (a weight, or a request's worth) differ in limits only.
-        parts = [part for part in get_args(bare) if part is not type(None)]
-        return " or ".join(dict.fromkeys(expected(part, key) for part in parts))
-    if origin is Literal:
-        return _any_of(get_args(bare))
-    if origin is tuple:
-        return _list(get_args(bare), key)
-    if origin is dict:
-        return "a table of names and values"
-    if dataclasses.is_dataclass(bare):
-        return "a table"
-    if bare in (int, float):
+        told = _either(get_args(bare), key)
+    elif origin is Literal:
+        told = _any_of([f'"{word}"' for word in get_args(bare)])
+    elif origin is tuple:
+        told = _list(get_args(bare), key)
+    elif origin is dict:
+        told = "a table of names and values"
+    elif dataclasses.is_dataclass(bare):
+        told = "a table"
+    elif bare in (int, float):
         kind = "a whole number" if bare is int else "a number"
-        return " ".join(filter(None, (kind, unit_of(key)[0], _range(limits))))
-    return _EXAMPLES.get(bare, "a value")
+        told = " ".join(filter(None, (kind, unit_of(key)[0]))) + _range(limits)
+    else:
+        told = _EXAMPLES.get(bare, "a value")
+    return told
 
 
-def _bare(hint: Any) -> tuple[Any, tuple[Any, ...]]:
+def bare_hint(hint: Hint) -> tuple[Hint, tuple[Any, ...]]:
     """Return a hint without its limits, and the limits."""
-    if get_origin(hint) is Annotated:
+    if origin_of(hint) is Annotated:
         return get_args(hint)[0], hint.__metadata__
     return hint, ()
 
 
-def _any_of(words: Iterable[object]) -> str:
-    """Return "one of ..." with the words quoted as TOML wants them."""
-    quoted = [f'"{word}"' for word in words]
-    return quoted[0] if len(quoted) == 1 else f"{', '.join(quoted[:-1])} or {quoted[-1]}"
+def origin_of(hint: Hint) -> object:
+    """Return what a generic hint is made from: tuple, dict, Literal, a union, or None."""
+    return get_origin(hint)
+
+
+def _either(parts: tuple[Any, ...], key: str) -> str:
+    """Return the words for a union: set words first, then the number with the widest limits."""
+    words = [f'"{word}"' for part in parts if origin_of(part) is Literal for word in get_args(part)]
+    numbers = [part for part in parts if bare_hint(part)[0] in (int, float)]
+    widest = max(
+        numbers,
+        key=lambda part: max((limit.le or 0.0 for limit in bare_hint(part)[1]), default=0.0),
+        default=None,
+    )
+    rest = [
+        part
+        for part in parts
+        if part not in numbers and origin_of(part) is not Literal and part is not NoneType
+    ]
+    if widest is not None:
+        rest.append(widest)
+    return _any_of([*words, *(expected(part, key) for part in rest)])
+
+
+def _any_of(words: list[str]) -> str:
+    """Return "a, b or c"."""
+    return words[0] if len(words) == 1 else f"{', '.join(words[:-1])} or {words[-1]}"
 
 
 def _list(parts: tuple[Any, ...], key: str) -> str:
@@ -124,17 +149,18 @@ def _list(parts: tuple[Any, ...], key: str) -> str:
 
 
 def _range(limits: tuple[Any, ...]) -> str:
-    """Return limits in words; an upper limit nobody meets is not worth a word."""
-    told = []
+    """Return " from 0 to 1" and the like; an upper limit that nobody meets is not worth a word."""
+    told = ""
     for limit in limits:
         if not isinstance(limit, Interval):
             continue
-        low = limit.ge if limit.ge is not None else limit.gt
-        high = limit.le if limit.le is not None else limit.lt
-        above = "" if limit.gt is None else "more than "
-        if low is not None and high is not None and high < 1e6:  # type: ignore[operator]
-            joint = "and at most" if above else "to"
-            told.append(f"{above or 'from '}{low:g} {joint} {high:g}")  # type: ignore[str-format]
-        elif low is not None:
-            told.append(f"{above or 'at least '}{low:g}")  # type: ignore[str-format]
-    return " ".join(told)
+        low: Any = limit.ge if limit.ge is not None else limit.gt
+        high: Any = limit.le if limit.le is not None else limit.lt
+        low_told, high_told = f"{low:.10g}", f"{high:.10g}"
+        if high >= 1e15:
+            told += f", more than {low_told}" if limit.ge is None else f", at least {low_told}"
+        elif limit.ge is None:
+            told += f", more than {low_told} and at most {high_told}"
+        else:
+            told += f" from {low_told} to {high_told}"
+    return told
