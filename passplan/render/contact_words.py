@@ -6,7 +6,18 @@ from dataclasses import dataclass
 from passplan.domain.mission import Mission
 from passplan.domain.moments import Horizon
 from passplan.domain.plan import Contact, Plan
-from passplan.render.words import clock, compass, degrees, safe, size, station_name, station_of
+from passplan.render.words import (
+    LISTENING_CAUTIONS,
+    SENDING_CAUTIONS,
+    clock,
+    compass,
+    degrees,
+    listed,
+    safe,
+    size,
+    station_name,
+    station_of,
+)
 
 _DATE_LENGTH = len(" 2026-12-07")
 
@@ -40,11 +51,6 @@ def short_command(name: str) -> str:
     return safe(name[:-_DATE_LENGTH] if dated else name)
 
 
-def goes_up(contact: Contact) -> str:
-    """Return the commands in words, "" for none."""
-    return ", ".join(safe(name) for name in contact.commands)
-
-
 def kinds_down(contact: Contact) -> tuple[str, ...]:
     """Return ("images 290 kB", "health 20 kB"), the largest first."""
     parts = sorted(contact.downlink_byte.items(), key=lambda part: (-part[1], part[0]))
@@ -75,19 +81,46 @@ def ready_s(contact: Contact, mission: Mission, operator: str = "") -> int:
     return math.floor(contact.start_s - preparation_s(contact, mission, operator))
 
 
+def up_words(contact: Contact, mission: Mission) -> str:
+    """Return what goes up, in a sentence."""
+    if contact.commands:
+        return f"Goes up: {', '.join(map(safe, contact.commands))}."
+    return "Nothing goes up but the call." if sends(contact, mission) else "Nothing goes up."
+
+
+def down_words(contact: Contact) -> str:
+    """Return what comes down, in a sentence."""
+    kinds = kinds_down(contact)
+    if not kinds:
+        return "No data are planned to come down."
+    return f"Comes down if all goes well: {size(total_down(contact))} ({', '.join(kinds)})."
+
+
+def who(contact: Contact, mission: Mission) -> str:
+    """Return "QX3AB sends", "Fern listens" or "QX3AB sends with Fern"."""
+    first, *others = map(safe, contact.operators or ("nobody",))
+    does = "sends" if sends(contact, mission) else "listens"
+    return f"{first} {does} with {listed(others)}" if others else f"{first} {does}"
+
+
+def cautions(contact: Contact, mission: Mission) -> tuple[str, ...]:
+    """Return what people at the antenna have to mind."""
+    return SENDING_CAUTIONS if sends(contact, mission) else LISTENING_CAUTIONS
+
+
 def partner(contact: Contact, plan: Plan, mission: Mission, *, before: bool) -> str:
     """Return who has the satellite directly before or after, in a sentence, "" for nobody."""
     name = contact.hand_over_from if before else contact.hand_over_to
     other = next((each for each in plan.all_contacts if each.id == name), None)
     if other is None:
         return ""
-    who = " and ".join(safe(handle) for handle in other.operators)
+    people = listed(map(safe, other.operators))
     place = station_name(mission, other.station)
     if before:
         until = clock(plan.horizon.utc(other.end_s), seconds=True)
-        return f"Before you {who} at {place} has the satellite ({other.id}, until {until} UTC)."
+        return f"Before you {people} at {place} has the satellite ({other.id}, until {until} UTC)."
     since = clock(plan.horizon.utc(other.start_s), seconds=True)
-    return f"After you {who} at {place} takes over ({other.id}, from {since} UTC)."
+    return f"After you {people} at {place} takes over ({other.id}, from {since} UTC)."
 
 
 def timeline(contact: Contact, mission: Mission, operator: str = "") -> list[Moment]:

@@ -22,7 +22,7 @@ class Column:
 
     Attributes:
         right: figures stand right-aligned.
-        rank: 0 stays at any width; of the others the highest goes first when the columns
+        rank: 0 stays at any width; of the others the highest go first when the columns
             do not all have their good width.
         good: width at which it reads well; None takes the widest cell.
         least: narrowest useful width; None takes `good`.
@@ -153,10 +153,12 @@ class Page:
 def _laid_out(columns: Sequence[Column], width: int) -> tuple[list[Column], list[int]]:
     """Return the columns that fit into `width` and the width of each."""
     kept = list(columns)
+    while sum(column.comfortable + _GAP for column in kept) > width + _GAP:
+        last = max(column.rank for column in kept)
+        if last == 0:
+            break
+        kept = [column for column in kept if column.rank < last]
     gaps = _GAP * (len(kept) - 1)
-    while sum(column.comfortable for column in kept) + gaps > width and any(column.rank for column in kept):
-        kept.remove(max(kept, key=lambda column: column.rank))
-        gaps -= _GAP
     widths = [column.narrowest for column in kept]
     spare = width - gaps - sum(widths)
     for wanted in ("comfortable", "natural"):

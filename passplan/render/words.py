@@ -14,10 +14,11 @@ _MONTHS = ("Jan", "Feb", "Mar", "Apr", "May", "Jun", "Jul", "Aug", "Sep", "Oct",
 _POINTS = ("N", "NNE", "NE", "ENE", "E", "ESE", "SE", "SSE", "S", "SSW", "SW", "WSW", "W", "WNW", "NW", "NNW")
 _MOST_TEXT = 200
 
-CAUTIONS = (
-    "The licensed operator in charge decides whether to transmit; your licence and local rules come first.",
+SENDING_CAUTIONS = (
+    "The licensed operator in charge decides whether to transmit; the licence and local rules come first.",
     "Keep everybody away from the antenna: it starts to turn and to radiate without warning.",
 )
+LISTENING_CAUTIONS = ("Keep everybody away from the antenna: it starts to turn without warning.",)
 
 
 def safe(text: str) -> str:
@@ -152,6 +153,12 @@ def amount(value: float, unit: str) -> str:
 def figure(value: float) -> str:
     """Return a number with two digits where it is small and none after the point from ten on."""
     return f"{value:.0f}" if abs(value) >= 9.95 else f"{value:.2g}"
+
+
+def listed(words: Iterable[str]) -> str:
+    """Return "QX3AB", "QX3AB and Fern" or "QX3AB, QY1K and Fern"."""
+    *most, last = list(words) or ["nobody"]
+    return f"{', '.join(most)} and {last}" if most else last
 
 
 def station_of(mission: Mission, code: str) -> Station | None:
