@@ -16,7 +16,8 @@ class ElementSet(Checked):
     Attributes:
         name: object name, "" when the text has none.
         number: catalogue number; None for an object that has none yet.
-        designator: international designator as written ("2026-101A" or "26101A"), or "".
+        designator: international designator, "2026-101A" also where a TLE has "26101A"; as written when it is
+            neither; "" when there is none.
         epoch: aware UTC moment of the elements.
         mean_motion_rev_day: Kozai mean motion.
         mean_motion_dot_rev_day2: as printed in a TLE, the first derivative divided by 2; SGP4 ignores it.

@@ -182,7 +182,7 @@ def _value_slip(page: Page, group: Group, field: str, told: str) -> Mistake:
 
 
 def _epoch(field: str) -> datetime | None:
-    """Return the moment of a year, a day of it and its fraction, to a microsecond; None if it has no such day."""
+    """Return the moment of a year, a day and its fraction, to a microsecond; None if it has no such day."""
     day, _, fraction = field[2:].strip().partition(".")
     microseconds = round(int(fraction) * _DAY_MICROSECONDS / 10 ** len(fraction))
     try:
