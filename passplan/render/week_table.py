@@ -68,6 +68,12 @@ def add_headline(page: Page, plan: Plan) -> None:
         page.sentences(safe(notice), style=THIN)
 
 
+def add_trust(page: Page, plan: Plan) -> None:
+    """Add a warning where a plan is not fit to be followed; nothing where it is."""
+    if plan.verdict is None or not plan.verdict.ok:
+        page.sentences(f"This plan is {_state(plan)[0]}.", style=BROKEN)
+
+
 def _state(plan: Plan) -> tuple[str, str]:
     """Return how far the plan can be trusted, and the style it is said in."""
     if plan.verdict is None:

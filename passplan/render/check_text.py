@@ -1,0 +1,51 @@
+"""What `check` found: mistakes, doubts, and the values nobody wrote that are assumed."""
+
+from collections.abc import Iterable, Sequence
+from itertools import groupby
+
+from rich.text import Text
+
+from passplan.domain.errors import Mistake
+from passplan.render.typeset import BROKEN, STRONG, THIN, Column, Page
+from passplan.render.words import count, safe
+
+
+def check_text(
+    mistakes: Sequence[Mistake], warnings: Sequence[str], assumed: Iterable[tuple[str, str, str]], width: int
+) -> Text:
+    """Return the findings, the answer first.
+
+    Args:
+        mistakes: what nobody can plan with, in the order of files.
+        warnings: sentences about what is legal and surely unintended.
+        assumed: (file, key, value with its unit) of each default in force, in the order of files.
+        width: cells of the terminal.
+    """
+    page = Page(width)
+    defaults = list(assumed)
+    said = [count(len(mistakes), "mistake")] if mistakes else ["Nothing is wrong"]
+    said += [count(len(warnings), "doubt")] if warnings else []
+    said += [f"{count(len(defaults), 'value')} assumed"] if defaults else []
+    page.sentences(f"{', '.join(said)}.", style=BROKEN if mistakes else STRONG)
+    for file, group in groupby(mistakes, key=lambda mistake: mistake.file):
+        page.heading(safe(file) or "The workspace")
+        for mistake in group:
+            _add_mistake(page, mistake)
+    if warnings:
+        page.heading("Doubts")
+        for warning in warnings:
+            page.sentences(safe(warning), indent=2, style=THIN)
+    for file, rows in groupby(defaults, key=lambda row: row[0]):
+        page.heading(f"Assumed in {safe(file)}")
+        kept = list(rows)
+        keys, values = (tuple(safe(row[index]) for row in kept) for index in (1, 2))
+        page.table([Column(heading="", cells=keys), Column(heading="", cells=values, least=10)])
+    return page.text()
+
+
+def _add_mistake(page: Page, mistake: Mistake) -> None:
+    """Add one mistake: where, what stands there, what is allowed."""
+    where = safe(mistake.key)
+    shown = f"{safe(mistake.text)!r}" if mistake.text else ""
+    page.sentences(": ".join(filter(None, (where, shown))) or "the file", indent=2, style=STRONG)
+    page.sentences(safe(mistake.allowed), indent=4)
