@@ -26,7 +26,7 @@ def stencils(intervals: Ints, nodes: int) -> Ints:
 
 def middles(first: Ints) -> Floats:
     """Return the places that polynomials starting at nodes `first` count from."""
-    return first + _MIDDLE
+    return first.astype(np.float64) + _MIDDLE
 
 
 def polynomials(values: Floats, rows: Ints, first: Ints) -> Floats:
@@ -42,7 +42,8 @@ def polynomials(values: Floats, rows: Ints, first: Ints) -> Floats:
     """
     starts = rows * values.shape[1] + first
     taken = values.ravel().take(np.add.outer(_OFFSETS, starts))
-    return (_TO_POWERS @ taken.reshape(POINTS, -1)).reshape(taken.shape)
+    powers: Floats = (_TO_POWERS @ taken.reshape(POINTS, -1)).reshape(taken.shape)
+    return powers
 
 
 def expanded(coefficients: Floats, place: Floats, order: int) -> list[Floats]:

@@ -9,10 +9,12 @@ from numpy.typing import NDArray
 from passplan.domain.elements import ElementSet
 from passplan.domain.moments import Horizon
 from passplan.domain.station import Station
+from passplan.sky.horizon_lines import HorizonLines, horizon_lines
 from passplan.sky.looks import looks, state
+from passplan.sky.mask_cuts import cut
 from passplan.sky.nodes import POINTS
 from passplan.sky.propagate import Arc, arc, grids, step_s
-from passplan.sky.search import Stretches, stretches
+from passplan.sky.search import Stretches, holders, stretches
 from passplan.sky.sites import Sites, sites
 
 Floats = NDArray[np.float64]
@@ -58,26 +60,26 @@ def passes_of(
         stations: whose `horizon` lines count.
         horizon: the week.
     """
-    places = sites(stations)
+    places, lines = sites(stations), horizon_lines(stations)
     grid = grids(horizon, 0.0)
     for name in sorted(elements):
         flown = arc(elements[name], grid(step_s(elements[name])))
-        yield found(name, flown, stations, places, horizon)
+        yield found(name, flown, places, lines, horizon)
 
 
-def found(name: str, flown: Arc, stations: Sequence[Station], places: Sites, horizon: Horizon) -> Found:
+def found(name: str, flown: Arc, places: Sites, lines: HorizonLines, horizon: Horizon) -> Found:
     """Return the passes of one satellite whose arc is known."""
     end_s = horizon.end_s if flown.end_s is None else min(horizon.end_s, flown.end_s)
     first, last = flown.node_range(0.0, end_s)
     if flown.nodes < POINTS or last <= first:
         return _culminated(name, flown, places, _NOTHING, end_s)
-    level_deg = np.array([min(low for _, low in station.horizon) for station in stations])
+    level_sine = np.sin(np.radians(lines.lowest_deg))
     parts = []
-    for start in range(0, len(stations), _BLOCK):
+    for start in range(0, len(level_sine), _BLOCK):
         block = slice(start, start + _BLOCK)
-        seen = stretches(flown, places.part(block), np.sin(np.radians(level_deg[block])), first, last)
+        seen = stretches(flown, places.part(block), level_sine[block], first, last)
         parts.append(replace(seen, row=seen.row + start, peak_row=seen.peak_row + start))
-    seen = _chained(parts)
+    seen = cut(flown, places, lines, _chained(parts))
     return _culminated(name, flown, places, seen, end_s)
 
 
@@ -101,7 +103,7 @@ def _culminated(name: str, flown: Arc, places: Sites, seen: Stretches, end_s: fl
     inside = (fall_s > 0.0) & (rise_s < end_s)
     row, rise_s, fall_s = seen.row[inside], rise_s[inside], fall_s[inside]
     aos_s, los_s = np.maximum(rise_s, 0.0), np.minimum(fall_s, end_s)
-    holder = _holders(row, aos_s, los_s, seen.peak_row, peak_s)
+    holder = holders(row, aos_s, los_s, seen.peak_row, peak_s)
     held = holder >= 0
     each = np.arange(len(row))
     ends = looks(places, np.concatenate((row, row)), *state(flown, np.concatenate((aos_s, los_s))))
@@ -122,13 +124,3 @@ def _culminated(name: str, flown: Arc, places: Sites, seen: Stretches, end_s: fl
         open_start=rise_s <= 0.0,
         open_end=fall_s >= end_s,
     )
-
-
-def _holders(row: Ints, aos_s: Floats, los_s: Floats, peak_row: Ints, peak_s: Floats) -> Ints:
-    """Return the stretch each peak lies in, -1 where it was cut off, shape (p,)."""
-    if not len(row):
-        return np.full(len(peak_row), -1)
-    apart_s = 2.0 * (los_s.max() + np.abs(peak_s).max(initial=0.0)) + 1.0
-    holder = np.searchsorted(row * apart_s + aos_s, peak_row * apart_s + peak_s, side="right") - 1
-    fits = (holder >= 0) & (row[holder] == peak_row) & (peak_s <= los_s[holder])
-    return np.where(fits, holder, -1)

@@ -63,7 +63,7 @@ class Arc:
     @property
     def nodes(self) -> int:
         """How many nodes there are; fewer than `POINTS` cannot be interpolated."""
-        return self.teme_km.shape[1]
+        return int(self.teme_km.shape[1])
 
     def node_range(self, begin_s: float, end_s: float) -> tuple[int, int]:
         """Return the first and last node of the shortest stretch of nodes around [begin_s, end_s]."""

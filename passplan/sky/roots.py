@@ -16,6 +16,7 @@ def roots(
     high: Floats,
     guess: Floats,
     low_is_above: NDArray[np.bool_],
+    *,
     tolerance: float,
 ) -> Floats:
     """Return a root of each of m functions between `low` and `high`, shape (m,).
@@ -25,7 +26,8 @@ def roots(
 
     Args:
         function: values and slopes of all m functions at one place each.
-        low, high: ends of the brackets, shape (m,).
+        low: lower ends of the brackets, shape (m,).
+        high: upper ends.
         guess: where to begin, inside the brackets.
         low_is_above: whether each function is positive at `low`, and so not at `high`.
         tolerance: stops when no root moves by more than this in a round.

@@ -86,7 +86,8 @@ def stretches(arc: Arc, sites: Sites, level_sine: Floats, first: int, last: int)
         arc: at least POINTS nodes.
         sites: s stations.
         level_sine: sin of each station's level, shape (s,); may be negative.
-        first, last: nodes.
+        first: node to begin at.
+        last: node to end at.
     """
     scene = _scene(arc, sites, level_sine)
     heights = scene.pair[: len(level_sine), first : last + 1]
@@ -127,7 +128,8 @@ def _least_height_km(arc: Arc, sites: Sites, level_sine: Floats) -> Floats:
     reach_km = np.where(rising, lowest_km - sagitta_km, highest_km + sagitta_km)
     half = sites.height_km * level_sine + np.where(rising, lean_km, -lean_km)
     range_km = np.sqrt(np.maximum(half**2 + reach_km**2 - site2, 0.0)) - half
-    return level_sine * np.maximum(range_km, 0.0) - sagitta_km
+    least_km: Floats = level_sine * np.maximum(range_km, 0.0) - sagitta_km
+    return least_km
 
 
 def _knots(scene: _Scene, row: Ints, node: Ints) -> tuple[_Knots, Floats]:
@@ -172,7 +174,7 @@ def _turned(
 
     low = node - middle
     guess = low + before / (before - after)
-    place = roots(turning, low, low + 1.0, guess, before > 0.0, scene.tolerance)
+    place = roots(turning, low, low + 1.0, guess, before > 0.0, tolerance=scene.tolerance)
     z, range2 = expanded(curves, place, 0)[0]
     return place + middle, z, range2
 
@@ -196,7 +198,7 @@ def _crossings(scene: _Scene, knots: _Knots) -> tuple[Ints, Floats, Bools]:
     share = np.where(knots.turns[high], 1.0 - np.sqrt(1.0 - share), share)
     start, stop = knots.place[low] - middle, knots.place[high] - middle
     guess = start + share * (stop - start)
-    place = roots(excess, start, stop, guess, above[low], scene.tolerance)
+    place = roots(excess, start, stop, guess, above[low], tolerance=scene.tolerance)
     return row, place + middle, above[high]
 
 
@@ -220,3 +222,13 @@ def _paired(scene: _Scene, knots: _Knots, peaks: Floats, first: int, last: int) 
         peak=peaks[1],
         peak_sine=peaks[2],
     )
+
+
+def holders(row: Ints, low: Floats, high: Floats, of_row: Ints, place: Floats) -> Ints:
+    """Return the stretch [low, high] of the same row that each place lies in, -1 for none, shape (p,)."""
+    if not len(row):
+        return np.full(len(of_row), -1)
+    apart = 2.0 * (np.abs(high).max() + np.abs(place).max(initial=0.0)) + 1.0
+    holder = np.searchsorted(row * apart + low, of_row * apart + place, side="right") - 1
+    fits = (holder >= 0) & (row[holder] == of_row) & (place <= high[holder])
+    return np.where(fits, holder, -1)

@@ -40,7 +40,9 @@ def sun_km(julian_day: Floats) -> Floats:
     obliquity = np.radians(23.439 - 0.0000004 * day)
     distance_km = AU_KM * (1.00014 - 0.01671 * np.cos(anomaly) - 0.00014 * np.cos(2.0 * anomaly))
     sine = np.sin(ecliptic)
-    return distance_km * np.stack((np.cos(ecliptic), np.cos(obliquity) * sine, np.sin(obliquity) * sine))
+    direction = np.stack((np.cos(ecliptic), np.cos(obliquity) * sine, np.sin(obliquity) * sine))
+    position_km: Floats = distance_km * direction
+    return position_km
 
 
 def darkness(position_km: Floats, sun: Floats, model: ShadowModel) -> Floats:
@@ -55,7 +57,9 @@ def darkness(position_km: Floats, sun: Floats, model: ShadowModel) -> Floats:
     sun_distance_km = np.sqrt(np.einsum("ij,ij->j", to_sun, to_sun))
     cosine = -np.einsum("ij,ij->j", position_km, to_sun) / (distance_km * sun_distance_km)
     earth_disc = np.arcsin(np.minimum(EARTH_RADIUS_KM / distance_km, 1.0))
-    return cosine - np.cos(earth_disc + _DISC[model] * np.arcsin(SUN_RADIUS_KM / sun_distance_km))
+    sun_disc = np.arcsin(SUN_RADIUS_KM / sun_distance_km)
+    depth: Floats = cosine - np.cos(earth_disc + _DISC[model] * sun_disc)
+    return depth
 
 
 def shadows(flown: Arc, horizon: Horizon, since_s: float, model: ShadowModel = "half") -> tuple[Span, ...]:
@@ -77,7 +81,7 @@ def shadows(flown: Arc, horizon: Horizon, since_s: float, model: ShadowModel = "
 
 
 def _crossings(depth: Floats, first: int, last: int, tolerance: float) -> Floats:
-    """Return the places between nodes `first` and `last` where the row `depth` (1, n) changes sign, in order."""
+    """Return the places between nodes `first` and `last` where `depth` (1, n) changes sign, in order."""
     node = np.arange(first, last)
     slope = slopes(depth)[0]
     above = depth[0] > 0.0
@@ -98,7 +102,9 @@ def _crossings(depth: Floats, first: int, last: int, tolerance: float) -> Floats
         value, rate = expanded(curves, place, 1)
         return value, rate
 
-    return middle + roots(dark, start, stop, start + share * (stop - start), at_knots[low] > 0.0, tolerance)
+    return middle + roots(
+        dark, start, stop, start + share * (stop - start), at_knots[low] > 0.0, tolerance=tolerance
+    )
 
 
 def _turns(depth: Floats, slope: Floats, node: NDArray[np.intp], tolerance: float) -> Floats:
@@ -111,7 +117,7 @@ def _turns(depth: Floats, slope: Floats, node: NDArray[np.intp], tolerance: floa
 
     low = node - middle
     share = slope[node] / (slope[node] - slope[node + 1])
-    return middle + roots(rate, low, low + 1.0, low + share, slope[node] > 0.0, tolerance)
+    return middle + roots(rate, low, low + 1.0, low + share, slope[node] > 0.0, tolerance=tolerance)
 
 
 def _curves(depth: Floats, node: NDArray[np.intp]) -> tuple[Floats, Floats]:

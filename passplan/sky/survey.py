@@ -1,6 +1,7 @@
 """The whole sky of a mission for one horizon: passes, shadows, decays."""
 
 from collections.abc import Iterator, Mapping, Sequence
+from typing import Literal
 
 import numpy as np
 from numpy.typing import NDArray
@@ -9,6 +10,7 @@ from passplan.domain.elements import ElementSet
 from passplan.domain.moments import Horizon, Span, without
 from passplan.domain.passes import Pass, Sky
 from passplan.domain.station import Station
+from passplan.sky.horizon_lines import horizon_lines
 from passplan.sky.looks import looks, state
 from passplan.sky.overhead import Found, found
 from passplan.sky.propagate import Arc, arc, grids, step_s
@@ -17,7 +19,13 @@ from passplan.sky.sunlight import shadows
 
 Floats = NDArray[np.float64]
 
-_CLIPPED = {(False, False): "", (True, False): "start", (False, True): "end", (True, True): "both"}
+_Clipped = Literal["", "start", "end", "both"]
+_CLIPPED: dict[tuple[bool, bool], _Clipped] = {
+    (False, False): "",
+    (True, False): "start",
+    (False, True): "end",
+    (True, True): "both",
+}
 
 
 def survey(
@@ -31,7 +39,7 @@ def survey(
         horizon: the week.
         since_s: shadows are wanted from here on, which may be before the week.
     """
-    places = sites(stations)
+    places, lines = sites(stations), horizon_lines(stations)
     grid = grids(horizon, since_s)
     passes: list[Pass] = []
     dark: dict[str, tuple[Span, ...]] = {}
@@ -39,7 +47,7 @@ def survey(
     for name in sorted(elements):
         flown = arc(elements[name], grid(step_s(elements[name])))
         dark[name] = shadows(flown, horizon, since_s)
-        seen = found(name, flown, stations, places, horizon)
+        seen = found(name, flown, places, lines, horizon)
         passes.extend(_described(seen, flown, stations, places, dark[name]))
         if flown.end_s is not None and flown.end_s < horizon.end_s:
             ends[name] = flown.end_s

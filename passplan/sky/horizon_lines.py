@@ -1,0 +1,77 @@
+"""The lines that stations' horizons draw over azimuth, many at once."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from passplan.domain.station import Station
+
+Floats = NDArray[np.float64]
+Ints = NDArray[np.intp]
+
+_APART_DEG = 2000.0  # the lines lie end to end on one axis, each from -360 to 720 deg
+
+
+@dataclass(frozen=True, kw_only=True, slots=True, eq=False)
+class HorizonLines:
+    """Straight lines between corners, station after station on one axis.
+
+    Attributes:
+        key_deg: corners' azimuths, three turns of them so that a satellite can be followed
+            across north, station k shifted by k * 2000 deg, rising.
+        elevation_deg: at the corners.
+        slope: rise of the line after each corner, deg per deg.
+        lowest_deg: lowest point of each of the s lines, shape (s,).
+        jagged: whether each line depends on azimuth at all, shape (s,).
+    """
+
+    key_deg: Floats
+    elevation_deg: Floats
+    slope: Floats
+    lowest_deg: Floats
+    jagged: NDArray[np.bool_]
+
+    def elevation(self, row: Ints, azimuth_deg: Floats) -> Floats:
+        """Return the lines' elevation (deg) of stations `row` at azimuths in [0, 360], shape (m,)."""
+        result: Floats = np.interp(row * _APART_DEG + azimuth_deg, self.key_deg, self.elevation_deg)
+        return result
+
+    def slope_at(self, row: Ints, azimuth_deg: Floats) -> Floats:
+        """Return the lines' slope (deg per deg) at azimuths in [0, 360], shape (m,)."""
+        corner = np.searchsorted(self.key_deg, row * _APART_DEG + azimuth_deg, side="right") - 1
+        result: Floats = self.slope[corner]
+        return result
+
+    def corners_between(self, row: Ints, low_deg: Floats, high_deg: Floats) -> tuple[Ints, Floats]:
+        """Return the corners met between azimuths `low_deg` and `high_deg`, both in [-360, 720].
+
+        Returns:
+            Index of the stretch of azimuth each corner lies in, and the corner's azimuth.
+        """
+        start = np.searchsorted(self.key_deg, row * _APART_DEG + low_deg, side="right")
+        count = np.searchsorted(self.key_deg, row * _APART_DEG + high_deg, side="left") - start
+        count = np.maximum(count, 0)
+        owner = np.repeat(np.arange(len(row)), count)
+        corner = np.arange(len(owner)) - np.repeat(np.cumsum(count) - count, count) + start[owner]
+        return owner, self.key_deg[corner] - row[owner] * _APART_DEG
+
+
+def horizon_lines(stations: Sequence[Station]) -> HorizonLines:
+    """Return the horizon lines of `stations`, mask and least receive elevation in one."""
+    keys, elevations = [], []
+    for number, station in enumerate(stations):
+        azimuth, elevation = np.array(station.horizon).T
+        turns = number * _APART_DEG + np.array([[-360.0], [0.0], [360.0]])
+        keys.append((turns + azimuth).ravel())
+        elevations.append(np.tile(elevation, 3))
+    key_deg, elevation_deg = np.concatenate(keys), np.concatenate(elevations)
+    slope = np.append(np.diff(elevation_deg) / np.diff(key_deg), 0.0)
+    return HorizonLines(
+        key_deg=key_deg,
+        elevation_deg=elevation_deg,
+        slope=slope,
+        lowest_deg=np.array([min(low for _, low in station.horizon) for station in stations]),
+        jagged=np.array([len(station.horizon) > 1 for station in stations]),
+    )
