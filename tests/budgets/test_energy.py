@@ -163,11 +163,13 @@ def test_energy_is_conserved(satellite: Satellite, moments: list[int], fraction:
     into_j, out_j = sum(f for f in flows_j if f > 0.0), -sum(f for f in flows_j if f < 0.0)
     small_j = 1e-9 * satellite.battery.capacity_j
     shunt_j = into_j - out_j - (ledger.end_j - start_j)
-    full_s = np.diff(ledger.times_s)[
-        (ledger.energy_j[:-1] == satellite.battery.capacity_j)
-        & (ledger.energy_j[1:] == satellite.battery.capacity_j)
-    ].sum()
-    assert shunt_j == pytest.approx(full_s * max([0.0, *rates_w]), abs=1e-6 * satellite.battery.capacity_j)
+    full = (ledger.energy_j[:-1] == ledger.energy_j[1:]) & (
+        ledger.energy_j[1:] == satellite.battery.capacity_j
+    )
+    begins_s = [s.start_s for s in spans]
+    offered_w = np.array(rates_w)[np.searchsorted(begins_s, ledger.times_s[:-1], side="right") - 1]
+    burned_j = float(np.sum(np.diff(ledger.times_s) * offered_w * full))
+    assert shunt_j == pytest.approx(burned_j, abs=1e-6 * satellite.battery.capacity_j)
     assert shunt_j >= -small_j
     assert ledger.energy_j.max() <= satellite.battery.capacity_j
     mean_w = idle_balance_w(satellite, shadows_of(moments), 0.0, 3000.0)

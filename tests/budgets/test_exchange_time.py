@@ -1,5 +1,8 @@
 """The seconds of one command, by hand and as laws."""
 
+import math
+from dataclasses import replace
+
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -51,6 +54,15 @@ def test_a_full_frame_needs_no_second_one() -> None:
     )
     # 168 bits more at 100 bit/s, half of the exchanges repeated
     assert spills - fits == pytest.approx(1.5 * 1.68, abs=1.0)
+
+
+def test_stuffing_grows_what_goes_up_and_what_comes_down() -> None:
+    """With a fifth more of all but the flags the 672 and 960 bits become 803.2 and 1148.8."""
+    plain = satellite_on_air(bit_rate_bit_s=100.0, expected_repeats=0.0)
+    framing = replace(plain.radio.framing, stuffing_fraction=0.2)
+    slot = exchange(replace(plain, radio=replace(plain.radio, framing=framing)), command_of())
+    assert slot.reply_s == pytest.approx(0.5 + 11.488)
+    assert slot.seconds == math.ceil(0.5 + 8.032 + 0.5 + 11.488 + 0.5) == 22
 
 
 def test_told_seconds_replace_the_reckoned_and_the_reply_stays() -> None:
