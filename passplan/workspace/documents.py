@@ -40,7 +40,18 @@ class Document:
     def key(self, place: Place) -> str:
         """Return a place as people read it, with its line: "operator[2].hours (line 31)"."""
         line = self.line(place)
-        return _path(place) + (f" (line {line})" if line else "")
+        return self.path(place) + (f" (line {line})" if line else "")
+
+    @staticmethod
+    def path(place: Place) -> str:
+        """Return a place as people read it, without its line; numbers count from 0."""
+        text = ""
+        for part in place:
+            if isinstance(part, int):
+                text += f"[{part}]"
+            else:
+                text += ("." if text else "") + (part if part.isprintable() else repr(part))
+        return text
 
     def line(self, place: Place) -> int:
         """Return the line of a key, or of the table it would stand in; 0 when unknown."""
@@ -198,14 +209,3 @@ def _table(parts: Place, counts: dict[Place, int], *, grows: bool) -> Place:
 def _parts(dotted: str) -> Place:
     """Return the parts of a dotted key."""
     return tuple(part.strip().strip("\"'") for part in dotted.split("."))
-
-
-def _path(place: Place) -> str:
-    """Return "operator[2].hours[0].begin" for the parts of a path; numbers count from 0."""
-    text = ""
-    for part in place:
-        if isinstance(part, int):
-            text += f"[{part}]"
-        else:
-            text += ("." if text else "") + (part if part.isprintable() else repr(part))
-    return text

@@ -59,7 +59,7 @@ def figure(key: str, value: object) -> str:
     if isinstance(value, bool):
         return "yes" if value else "no"
     if isinstance(value, int | float):
-        if key.endswith("_fraction"):
+        if key.endswith(("_fraction", "_efficiency")):
             return f"{100.0 * value:.3g} %"
         return f"{value:g} {unit_of(key)[1]}".rstrip()
     if isinstance(value, time):
