@@ -7,6 +7,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from passplan.domain.station import Station
+from passplan.sky.ragged import counted
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -51,10 +52,8 @@ class HorizonLines:
             Index of the stretch of azimuth each corner lies in, and the corner's azimuth.
         """
         start = np.searchsorted(self.key_deg, row * _APART_DEG + low_deg, side="right")
-        count = np.searchsorted(self.key_deg, row * _APART_DEG + high_deg, side="left") - start
-        count = np.maximum(count, 0)
-        owner = np.repeat(np.arange(len(row)), count)
-        corner = np.arange(len(owner)) - np.repeat(np.cumsum(count) - count, count) + start[owner]
+        stop = np.searchsorted(self.key_deg, row * _APART_DEG + high_deg, side="left")
+        owner, corner = counted(start, np.maximum(stop - start, 0))
         return owner, self.key_deg[corner] - row[owner] * _APART_DEG
 
 

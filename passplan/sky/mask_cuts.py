@@ -15,6 +15,7 @@ from numpy.typing import NDArray
 from passplan.sky.horizon_lines import HorizonLines
 from passplan.sky.nodes import expanded, middles, polynomials, stencils
 from passplan.sky.propagate import Arc
+from passplan.sky.ragged import counted
 from passplan.sky.roots import roots
 from passplan.sky.search import Stretches, holders
 from passplan.sky.sites import Sites
@@ -104,8 +105,7 @@ def _sampled(seen: Stretches, which: Ints) -> _Knots:
     rise, fall = seen.rise[which], seen.fall[which]
     begin = np.floor(rise * _PIECES).astype(np.intp) + 1
     count = np.maximum(np.ceil(fall * _PIECES).astype(np.intp) - begin, 0)
-    regular = np.repeat(np.arange(len(which)), count)
-    steps = np.arange(len(regular)) - np.repeat(np.cumsum(count) - count, count) + begin[regular]
+    regular, steps = counted(begin, count)
     around = np.concatenate((-_NEAR_TOP, [0.0], _NEAR_TOP))
     tops = (seen.peak[:, np.newaxis] + around).ravel()
     top_row = np.repeat(seen.peak_row, len(around))

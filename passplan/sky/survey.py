@@ -1,6 +1,8 @@
 """The whole sky of a mission for one horizon: passes, shadows, decays."""
 
+from bisect import bisect_left, bisect_right
 from collections.abc import Iterator, Mapping, Sequence
+from operator import itemgetter
 from typing import Literal
 
 import numpy as np
@@ -14,6 +16,7 @@ from passplan.sky.horizon_lines import horizon_lines
 from passplan.sky.looks import looks, state
 from passplan.sky.overhead import Found, found
 from passplan.sky.propagate import Arc, arc, grids, step_s
+from passplan.sky.range_rates import largest_range_rate_km_s
 from passplan.sky.sites import Sites, sites
 from passplan.sky.sunlight import shadows
 
@@ -63,9 +66,8 @@ def _described(
         return
     moments = np.stack((seen.aos_s, seen.tca_s, seen.los_s))
     view = looks(places, np.tile(seen.station, 3), *state(flown, moments.ravel()))
-    azimuth, range_km, rate = (
-        array.reshape(3, -1).T.tolist() for array in (view.azimuth_deg, view.range_km, view.range_rate_km_s)
-    )
+    azimuth, range_km = (array.reshape(3, -1).T.tolist() for array in (view.azimuth_deg, view.range_km))
+    fastest = largest_range_rate_km_s(flown, places, seen.station, seen.aos_s, seen.los_s).tolist()
     for k, (aos_s, tca_s, los_s) in enumerate(moments.T.tolist()):
         yield Pass(
             satellite=seen.satellite,
@@ -80,7 +82,14 @@ def _described(
             aos_range_km=range_km[k][0],
             tca_range_km=range_km[k][1],
             los_range_km=range_km[k][2],
-            largest_range_rate_km_s=max(abs(value) for value in rate[k]),
-            sunlit=tuple(without([(aos_s, los_s)], dark)),
+            largest_range_rate_km_s=fastest[k],
+            sunlit=_sunlit(aos_s, los_s, dark),
             clipped=_CLIPPED[bool(seen.open_start[k]), bool(seen.open_end[k])],
         )
+
+
+def _sunlit(aos_s: float, los_s: float, dark: Sequence[Span]) -> tuple[Span, ...]:
+    """Return the parts of a pass out of the shadows `dark`, which are many, in order and apart."""
+    first = bisect_left(dark, aos_s, key=itemgetter(1))
+    last = bisect_right(dark, los_s, key=itemgetter(0))
+    return tuple(without([(aos_s, los_s)], dark[first:last]))
