@@ -126,7 +126,8 @@ class WeeklyHours(Checked):
     def _faults(self) -> list[tuple[str, object, str]]:
         if not self.days:
             return [("days", self.days, 'name at least one of "mon" to "sun"')]
-        return []
+        zoned = [name for name in ("begin", "end") if getattr(self, name).tzinfo is not None]
+        return [(name, str(getattr(self, name)), "a local time without a zone") for name in zoned]
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)

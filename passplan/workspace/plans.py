@@ -1,9 +1,7 @@
 """The folder of plans: one file an edition, written whole or not at all, never overwritten."""
 
 import contextlib
-import csv
 import hashlib
-import io
 import os
 import re
 import tempfile
@@ -13,17 +11,15 @@ from datetime import datetime, timedelta
 from pathlib import Path
 
 from passplan.domain.errors import InputError, Mistake
-from passplan.domain.moments import iso
-from passplan.domain.plan import Plan
+from passplan.domain.plan import IssuedPlan, Plan
 from passplan.workspace.documents import read_text
 from passplan.workspace.plan_json import from_json, load, to_json
+from passplan.workspace.register import Entered, enter, entered
 
-REGISTER = "editions.csv"
 SAME_CONTACT = timedelta(minutes=20)  # an orbit takes 87 min or more, and elements never err so much
 
 _FILE = re.compile(r"(\d{4}-W\d{2})-([1-9]\d*)\.json")
 _ID = re.compile(r"([A-Z][A-Z0-9]*)-(\d+)")
-_HEADER = ("week", "edition", "made_utc", "sha256")
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -84,6 +80,24 @@ class PlanStore:
         path = self.path(week, edition or known[-1])
         return from_json(read_text(path, self._told(path)), self._told(path))
 
+    def issued(self, week: str) -> tuple[IssuedPlan, ...]:
+        """Return all editions of a week, in order, with the moments the register has for them.
+
+        Raises:
+            InputError: a plan or the register cannot be read, or an edition is not in it.
+        """
+        moments = {(line.week, line.edition): line.made_utc for line in entered(self.home)}
+        lost = [edition for edition in self.editions(week) if (week, edition) not in moments]
+        if lost:
+            told = "the register has no line for this plan; put the line back"
+            raise InputError(
+                [Mistake(self._told(self.path(week, edition)), "", "", told) for edition in lost]
+            )
+        return tuple(
+            IssuedPlan(plan=self.read(week, edition), made_utc=moments[week, edition])
+            for edition in self.editions(week)
+        )
+
     def write(self, plan: Plan, made_utc: datetime) -> Path:
         """Write a plan as a new edition and enter it in the register; return its file.
 
@@ -98,12 +112,17 @@ class PlanStore:
         """
         content = to_json(plan).encode("ascii")
         path = self.path(plan.horizon.week, plan.edition)
-        digest = hashlib.sha256(content).hexdigest()
+        line = Entered(
+            week=plan.horizon.week,
+            edition=plan.edition,
+            made_utc=made_utc,
+            sha256=hashlib.sha256(content).hexdigest(),
+        )
         try:
             self.home.mkdir(exist_ok=True)
             _publish(path, content)
             try:
-                self._enter(plan.horizon.week, plan.edition, made_utc, digest)
+                enter(self.home, line)
             except BaseException:
                 path.unlink()
                 raise
@@ -168,26 +187,6 @@ class PlanStore:
     def _told(self, path: Path) -> str:
         """Return a path as people would type it in the workspace."""
         return path.relative_to(self.folder).as_posix()
-
-    def _enter(self, week: str, edition: int, made_utc: datetime, digest: str) -> None:
-        """Append a line to the register, whole, after whatever a torn earlier write left."""
-        row = io.StringIO()
-        writer = csv.writer(row, lineterminator="\n")
-        with (self.home / REGISTER).open("a+b") as register:
-            size = register.seek(0, os.SEEK_END)
-            if size == 0:
-                writer.writerow(_HEADER)
-            else:
-                register.seek(size - 1)
-                row.write("" if register.read(1) == b"\n" else "\n")
-            writer.writerow((week, edition, iso(made_utc), digest))
-            try:
-                register.write(row.getvalue().encode("ascii"))
-                register.flush()
-                os.fsync(register.fileno())
-            except OSError:
-                register.truncate(size)
-                raise
 
 
 def _publish(path: Path, content: bytes) -> None:
