@@ -97,7 +97,7 @@ def elevations_deg(station: Station, horizon: Horizon, seconds: Floats, teme_km:
 
 def shadow_spans(horizon: Horizon, seconds: Floats, teme_km: Floats) -> tuple[Span, ...]:
     """Return the spans (s of the week) in which TEME positions (n, 3) lie in shadow."""
-    sun = _sun_direction(horizon, seconds)
+    sun = sun_direction(horizon, seconds)
     along = np.einsum("ij,ij->i", teme_km, sun)
     across = np.linalg.norm(teme_km - along[:, None] * sun, axis=1)
     return tuple(
@@ -158,7 +158,7 @@ def _sidereal_rad(horizon: Horizon, seconds: Floats) -> Floats:
     return np.radians(turns_s / 240.0 % 360.0)
 
 
-def _sun_direction(horizon: Horizon, seconds: Floats) -> Floats:
+def sun_direction(horizon: Horizon, seconds: Floats) -> Floats:
     """Return unit vectors to the Sun, shape (n, 3), by the Almanac's series good to 0.01 deg (page C5)."""
     whole, fraction = julian(horizon.start)
     days = (whole - 2451545.0) + fraction + seconds / DAY_S
