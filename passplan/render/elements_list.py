@@ -31,6 +31,7 @@ def elements_text(
     for name in dict.fromkeys(safe(each.name) or "(no name)" for each in sets if each in used):
         page.sentences(f"A plan of that week uses the set of {name} marked below.")
     page.line()
+    folder, sources = _sources(sets)
     epochs = [each.epoch.astimezone(UTC) for each in sets]
     page.table(
         [
@@ -43,13 +44,21 @@ def elements_text(
             ),
             Column(heading="epoch (UTC)", cells=tuple(_epoch(at, horizon) for at in epochs)),
             Column(heading="age", cells=tuple(_age(each, horizon) for each in sets), right=True),
-            Column(heading="from", cells=tuple(safe(each.source) for each in sets), good=28, least=10),
+            Column(heading=f"from {folder}".rstrip(), cells=sources, good=28, least=10),
             Column(heading="written as", cells=tuple(each.kind for each in sets), rank=2),
             Column(heading="set", cells=tuple(f"{each.element_number}" for each in sets), right=True, rank=3),
             Column(heading="designator", cells=tuple(safe(each.designator) or "-" for each in sets), rank=4),
         ]
     )
     return page.text()
+
+
+def _sources(sets: Sequence[ElementSet]) -> tuple[str, tuple[str, ...]]:
+    """Return the folder all sets come from ("" when they differ) and the rest of each source."""
+    sources = [safe(each.source).removesuffix(", line 1") for each in sets]
+    folders = {source.rpartition("/")[0] for source in sources}
+    folder = f"{folders.pop()}/" if len(folders) == 1 and "" not in folders else ""
+    return folder, tuple(source.removeprefix(folder) for source in sources)
 
 
 def _epoch(at: datetime, horizon: Horizon) -> str:

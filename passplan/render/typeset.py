@@ -143,10 +143,11 @@ class Page:
         return {column.heading for column in kept if column.brief and column.cells == column.brief}
 
     def text(self) -> Text:
-        """Return the page; print it with no wrapping, or take `.plain`."""
-        page = Text(no_wrap=True, overflow="ignore", end="")
-        for line, style in self._lines:
-            page.append(line + "\n", style or None)
+        """Return the page with no line feed at its end; print it softly wrapped, or take `.plain`."""
+        page = Text(no_wrap=True, overflow="ignore")
+        for number, (line, style) in enumerate(self._lines):
+            page.append("\n" if number else "")
+            page.append(line, style or None)
         return page
 
 
