@@ -11,8 +11,8 @@ from passplan.domain.requests import Command, Session
 from passplan.domain.satellite import Battery, DataKind, Framing, Power, Radio
 from passplan.domain.station import GroundRadio, Rotator, Station
 from passplan.workspace.documents import Data, Place
+from passplan.workspace.entries import Entry
 from passplan.workspace.read import read_entries
-from passplan.workspace.references import Entry
 from passplan.workspace.wording import figure
 
 

@@ -62,7 +62,24 @@ class Document:
         return 0
 
 
-def documents(folder: Path) -> tuple[list[Document], list[Mistake]]:
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Contents:
+    """The TOML files of a workspace.
+
+    Attributes:
+        files: every one that is there, in the order in which mistakes are told.
+        documents: those that could be read.
+        unread: kinds of the others.
+        mistakes: why they could not.
+    """
+
+    files: tuple[str, ...]
+    documents: tuple[Document, ...]
+    unread: frozenset[Kind]
+    mistakes: tuple[Mistake, ...]
+
+
+def documents(folder: Path) -> Contents:
     """Return every TOML file of a workspace and what is wrong with the ones that cannot be read.
 
     Raises:
@@ -75,13 +92,21 @@ def documents(folder: Path) -> tuple[list[Document], list[Mistake]]:
         told = "no mission.toml here, so this is no workspace; make one with: passplan new DIR"
         raise InputError([Mistake(str(folder), "", "", told)])
     found: list[Document] = []
+    unread: set[Kind] = set()
     mistakes: list[Mistake] = []
-    for kind, path in _paths(folder, mistakes):
+    paths = [(kind, path, path.relative_to(folder).as_posix()) for kind, path in _paths(folder, mistakes)]
+    for kind, path, file in paths:
         try:
-            found.append(_read(kind, path, path.relative_to(folder).as_posix()))
+            found.append(_read(kind, path, file))
         except InputError as error:
             mistakes.extend(error.mistakes)
-    return found, mistakes
+            unread.add(kind)
+    return Contents(
+        files=tuple(file for _, _, file in paths),
+        documents=tuple(found),
+        unread=frozenset(unread),
+        mistakes=tuple(mistakes),
+    )
 
 
 def read_bytes(path: Path, file: str) -> bytes:
@@ -189,6 +214,8 @@ def _lines(text: str) -> dict[Place, int]:
         if header := _HEADER.match(row):
             table = _table(_parts(header[2]), counts, grows=header[1] == "[[")
             lines.setdefault(table, number)
+            if header[1] == "[[":
+                lines.setdefault(table[:-1], number)
         elif key := _KEY.match(row):
             lines.setdefault(table + _parts(key[1]), number)
     return lines

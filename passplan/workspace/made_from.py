@@ -18,8 +18,7 @@ def made_from(folder: Path, element_files: Iterable[Path] = ()) -> tuple[tuple[s
     Raises:
         InputError: a file cannot be read.
     """
-    found, _ = documents(folder)
-    paths = {document.file: folder / document.file for document in found}
+    paths = {file: folder / file for file in documents(folder).files}
     for path in element_files:
         inside = path.is_relative_to(folder)
         paths[path.relative_to(folder).as_posix() if inside else path.name] = path

@@ -47,10 +47,15 @@ def read_noun(
     except RecursionError:
         return None, [Mistake(document.file, document.key(at), "", "nested too deeply")]
     mistakes = [
-        Mistake(document.file, document.key(at + place), shown(value), told)
+        Mistake(document.file, document.key(at + place), shown(value), visible(told))
         for place, (value, told) in faults.items()
     ]
     return (None if mistakes else made), mistakes
+
+
+def visible(text: str) -> str:
+    """Return a sentence with whatever a terminal might obey spelled out; names people gave stand in some."""
+    return "".join(char if char.isprintable() else repr(char)[1:-1] for char in text)
 
 
 def shown(value: object) -> str:
@@ -70,7 +75,7 @@ def shown(value: object) -> str:
 
 def nearest(word: str, known: list[str]) -> str:
     """Return ', did you mean "..."?' for a word close to a known one, else an empty text."""
-    close = difflib.get_close_matches(word, known, n=1, cutoff=0.6)
+    close = difflib.get_close_matches(word, known, n=1, cutoff=0.5)
     return f'; did you mean "{close[0]}"?' if close else ""
 
 
@@ -86,7 +91,7 @@ def _adapter(noun: type[Noun]) -> TypeAdapter[Noun]:
 
 def _json(data: Data) -> str:
     """Return tables as JSON text; dates and times in ISO 8601 form, inf and nan kept to be refused."""
-    return json.dumps(data, default=lambda value: value.isoformat())
+    return json.dumps(data, default=lambda value: value.isoformat().replace("+00:00", "Z"))
 
 
 def _all_faults(noun: type, data: Data, error: ValidationError) -> Faults:
@@ -102,7 +107,7 @@ def _all_faults(noun: type, data: Data, error: ValidationError) -> Faults:
                 for at, name, value, allowed in _told_by_nouns(hidden)
                 if not hidden_by(allowed, name, places, at)
             }
-            faults = more | faults
+            faults |= more
         if len(faults) == len(places):
             break
     return faults

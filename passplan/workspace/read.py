@@ -12,8 +12,9 @@ from passplan.domain.requests import Command, Session
 from passplan.domain.satellite import Satellite
 from passplan.domain.station import Station
 from passplan.workspace.documents import Data, Document, Kind, Place, documents
+from passplan.workspace.entries import Entry
 from passplan.workspace.nouns import nearest, read_noun
-from passplan.workspace.references import Entry, reference_mistakes
+from passplan.workspace.references import reference_mistakes
 
 Noun = TypeVar("Noun")
 
@@ -51,48 +52,60 @@ def read_entries(folder: Path) -> list[Entry]:
     Raises:
         InputError: with every mistake of every file, in the order of files and lines.
     """
-    found, mistakes = documents(folder)
+    contents = documents(folder)
+    mistakes = list(contents.mistakes)
+    unsure = {noun for kind in contents.unread for noun in _nouns(kind)}
     entries: list[Entry] = []
-    for document in found:
-        for noun, at, data in _tables(document, mistakes):
+    for document in contents.documents:
+        if strays := _strays(document):
+            mistakes.extend(strays)
+            unsure.update(_nouns(document.kind))
+        for noun, at, data in _tables(document):
             made, wrong = read_noun(noun, data, document, at)
             mistakes.extend(wrong)
             named = data if isinstance(data, dict) else {}
             entries.append(Entry(kind=noun, document=document, at=at, data=named, noun=made))
-    mistakes.extend(reference_mistakes(entries, folder))
+    mistakes.extend(reference_mistakes(entries, unsure, folder))
     if mistakes:
-        raise InputError(_in_order(mistakes, found))
+        raise InputError(_in_order(mistakes, contents.files))
     return entries
 
 
-def _tables(document: Document, mistakes: list[Mistake]) -> Iterator[tuple[type, Place, Data]]:
-    """Yield (noun, place, table) of each noun a file should hold; note keys that lead nowhere."""
-    if document.kind in WHOLE:
-        yield WHOLE[document.kind], (), _without_elsewhere(document, mistakes)
-        return
-    nouns = ROWS[document.kind]
-    for key, rows in document.data.items():
-        if key not in nouns:
-            told = f"unknown table{nearest(key, list(nouns))}"
-            mistakes.append(Mistake(document.file, document.key((key,)), "", told))
-        elif not isinstance(rows, list):
-            told = f"write each one under its own [[{key}]]"
-            mistakes.append(Mistake(document.file, document.key((key,)), "", told))
-        else:
-            for number, row in enumerate(rows):
-                yield nouns[key], (key, number), row
+def _nouns(kind: Kind) -> tuple[type, ...]:
+    """Return the nouns that files of a kind hold."""
+    return (WHOLE[kind],) if kind in WHOLE else tuple(ROWS[kind].values())
 
 
-def _without_elsewhere(document: Document, mistakes: list[Mistake]) -> Data:
-    """Return the data of a whole file; of mission.toml as a mission with nothing in it yet."""
-    if document.kind != "mission":
-        return document.data
-    for key in ELSEWHERE:
-        if key in document.data:
+def _strays(document: Document) -> list[Mistake]:
+    """Return keys at the top of a file that belong elsewhere, or are no [[table]] of this file."""
+    mistakes = []
+    for key, value in document.data.items():
+        told = ""
+        if document.kind in ROWS:
+            nouns = ROWS[document.kind]
+            if key not in nouns:
+                told = f"unknown table{nearest(key, list(nouns))}"
+            elif not isinstance(value, list):
+                told = f"write each one under its own [[{key}]]"
+        elif document.kind == "mission" and key in ELSEWHERE:
             told = "not in this file; see satellites/, stations/, operators.toml and commands.toml"
+        if told:
             mistakes.append(Mistake(document.file, document.key((key,)), "", told))
-    kept = {key: value for key, value in document.data.items() if key not in ELSEWHERE}
-    return kept | {"satellites": [], "stations": []}
+    return mistakes
+
+
+def _tables(document: Document) -> Iterator[tuple[type, Place, Data]]:
+    """Yield (noun, place, table) of each noun a file holds."""
+    if document.kind == "mission":  # a mission with nothing in it yet
+        kept = {key: value for key, value in document.data.items() if key not in ELSEWHERE}
+        yield Mission, (), kept | {"satellites": [], "stations": []}
+    elif document.kind in WHOLE:
+        yield WHOLE[document.kind], (), document.data
+    else:
+        for key, noun in ROWS[document.kind].items():
+            rows = document.data.get(key)
+            for number, row in enumerate(rows if isinstance(rows, list) else ()):
+                yield noun, (key, number), row
 
 
 def _of(kind: type[Noun], entries: list[Entry]) -> tuple[Noun, ...]:
@@ -100,9 +113,9 @@ def _of(kind: type[Noun], entries: list[Entry]) -> tuple[Noun, ...]:
     return tuple(entry.noun for entry in entries if isinstance(entry.noun, kind))
 
 
-def _in_order(mistakes: list[Mistake], found: list[Document]) -> list[Mistake]:
+def _in_order(mistakes: list[Mistake], files: tuple[str, ...]) -> list[Mistake]:
     """Return mistakes by file, in the order read, and by line; the rest as they came."""
-    order = {document.file: number for number, document in enumerate(found)}
+    order = {file: number for number, file in enumerate(files)}
 
     def place(mistake: Mistake) -> tuple[int, int]:
         line = mistake.key.rpartition("line ")[2].rstrip(")").partition(",")[0]

@@ -5,8 +5,8 @@ import re
 from collections.abc import Iterator
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Any
 
+from passplan.domain.checked import code_fault
 from passplan.domain.errors import Mistake, PassplanError
 from passplan.domain.mission import Mission
 from passplan.domain.moments import week_start
@@ -14,76 +14,65 @@ from passplan.domain.people import Operator
 from passplan.domain.requests import Command, Session
 from passplan.domain.satellite import Satellite
 from passplan.domain.station import Station
-from passplan.workspace.documents import Document, Place
+from passplan.workspace.entries import CALLED, Entry
 from passplan.workspace.nouns import nearest, shown
 
-# By which key each noun is called.
-_CALLED = {
-    Mission: "name",
-    Satellite: "name",
-    Station: "code",
-    Operator: "handle",
-    Command: "name",
-    Session: "name",
-}
 _WEEKS = ("1990-W01", "2199-W52")
 _DATED = re.compile(r"(.*) \d{4}-\d{2}-\d{2}")
 
 
-@dataclass(frozen=True, kw_only=True, slots=True)
-class Entry:
-    """One table of the workspace and the noun it became.
-
-    Attributes:
-        data: the table as written; its name is known even where the rest is wrong.
-        noun: None when something in it is wrong.
-    """
-
-    kind: type
-    document: Document
-    at: Place
-    data: dict[str, Any]
-    noun: Any
-
-    @property
-    def called(self) -> str:
-        """What it is called, "" when that is missing or no text."""
-        name = self.data.get(_CALLED[self.kind])
-        return name if isinstance(name, str) else ""
-
-    def texts(self, key: str) -> list[str]:
-        """Return the texts of a list, as written."""
-        values = self.data.get(key)
-        return [value for value in values if isinstance(value, str)] if isinstance(values, list) else []
-
-    def mistake(self, place: Place, text: object, told: str) -> Mistake:
-        """Return a mistake at a place inside this table."""
-        return Mistake(self.document.file, self.document.key(self.at + place), shown(text), told)
-
-
-def reference_mistakes(entries: list[Entry], folder: Path) -> list[Mistake]:
+def reference_mistakes(entries: list[Entry], unsure: set[type], folder: Path) -> list[Mistake]:
     """Return the mistakes between tables and files.
 
     Args:
         entries: all tables, sound or not.
+        unsure: nouns of which some could not be read; nothing is said to be missing there.
         folder: the workspace, to look whether a pinned element set is there.
     """
     found: list[Mistake] = []
-    for kind, name in _CALLED.items():
+    for kind, name in CALLED.items():
         found.extend(_twice([entry for entry in entries if entry.kind is kind], name))
-    known = {kind: [entry.called for entry in entries if entry.kind is kind] for kind in _CALLED}
+    known = {
+        kind: _Names(
+            said=[entry.called for entry in entries if entry.kind is kind],
+            sure=kind not in unsure and all(_well_named(entry) for entry in entries if entry.kind is kind),
+        )
+        for kind in CALLED
+    }
+    found.extend(mistake for entry in entries for mistake in _unknown(entry, known, entries))
+    people = [entry for entry in entries if entry.kind is Operator]
+    # Who serves where is known only once every operator reads well.
+    sure_people = known[Operator].sure and not any(
+        person.noun is None or set(person.texts("stations")) - set(known[Station].said) for person in people
+    )
     for entry in entries:
-        found.extend(_unknown(entry, known, entries))
         match entry.noun:
             case Mission():
                 found.extend(_pinned(entry, entry.noun, known[Satellite], folder))
             case Station():
                 found.extend(_mask(entry, entry.noun))
-                found.extend(_nobody(entry, entry.noun, entries))
+                found.extend(_nobody(entry, entry.noun, people) if sure_people else ())
             case Command() | Session():
                 found.extend(_too_short(entry, entry.noun))
     found.extend(_circles([entry for entry in entries if entry.kind is Command]))
     return found
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class _Names:
+    """The names said of one kind of noun; `sure` when no name can be missing from them."""
+
+    said: list[str]
+    sure: bool
+
+    def lack(self, name: str) -> bool:
+        """Return whether a name is surely not there."""
+        return self.sure and name not in self.said
+
+
+def _well_named(entry: Entry) -> bool:
+    """Return whether a table has a name that others can go by."""
+    return bool(entry.called) and not (entry.kind is Station and code_fault("code", entry.called))
 
 
 def file_name(name: str) -> str:
@@ -119,20 +108,20 @@ def _seat(entry: Entry, name: str) -> str:
     return f"{entry.document.file}, line {line}" if line else entry.document.file
 
 
-def _unknown(entry: Entry, known: dict[type, list[str]], entries: list[Entry]) -> Iterator[Mistake]:
+def _unknown(entry: Entry, known: dict[type, _Names], entries: list[Entry]) -> Iterator[Mistake]:
     """Yield references to things that are not there."""
     for number, code in enumerate(entry.texts("stations")):
-        if code not in known[Station]:
-            yield entry.mistake(("stations", number), code, _no_such("station", code, known[Station]))
+        if known[Station].lack(code):
+            yield entry.mistake(("stations", number), code, _no_such("station", code, known[Station].said))
         elif entry.kind is Command and _listens(code, entries):
             yield entry.mistake(("stations", number), code, "only listens; name stations that transmit")
     name = entry.data.get("satellite")
-    if isinstance(name, str) and name not in known[Satellite]:
-        yield entry.mistake(("satellite",), name, _no_such("satellite", name, known[Satellite]))
+    if isinstance(name, str) and known[Satellite].lack(name):
+        yield entry.mistake(("satellite",), name, _no_such("satellite", name, known[Satellite].said))
     for number, other in _links(entry):
-        if other not in known[Command]:
+        if known[Command].lack(other):
             place = ("after", number, "command")
-            yield entry.mistake(place, other, _no_such("command", other, known[Command]))
+            yield entry.mistake(place, other, _no_such("command", other, known[Command].said))
     yield from _unknown_kinds(entry, entries)
 
 
@@ -223,12 +212,10 @@ def _mask(entry: Entry, station: Station) -> Iterator[Mistake]:
             yield entry.mistake(("mask",), "", told)
 
 
-def _nobody(entry: Entry, station: Station, entries: list[Entry]) -> Iterator[Mistake]:
+def _nobody(entry: Entry, station: Station, people: list[Entry]) -> Iterator[Mistake]:
     """Yield a station that transmits with nobody who may control it."""
     if station.radio.transmits and not any(
-        other.data.get("may_control") is True and station.code in other.texts("stations")
-        for other in entries
-        if other.kind is Operator
+        person.noun.may_control and station.code in person.noun.stations for person in people
     ):
         told = (
             "it transmits and nobody may control it; "
@@ -253,14 +240,14 @@ def _too_short(entry: Entry, noun: Command | Session) -> Iterator[Mistake]:
         yield entry.mistake(("exchange_s",), noun.exchange_s, told)
 
 
-def _pinned(entry: Entry, mission: Mission, known: list[str], folder: Path) -> Iterator[Mistake]:
+def _pinned(entry: Entry, mission: Mission, known: _Names, folder: Path) -> Iterator[Mistake]:
     """Yield pinned things that are not there."""
     if (week := mission.pinned_week) is not None and (told := _week_fault(week)):
         yield entry.mistake(("pinned_week",), week, told)
     for name, file in mission.pinned_elements.items():
         place = ("pinned_elements", name)
-        if name not in known:
-            yield entry.mistake(place, name, _no_such("satellite", name, known))
+        if known.lack(name):
+            yield entry.mistake(place, name, _no_such("satellite", name, known.said))
         if Path(file).name != file:
             yield entry.mistake(place, file, "the bare name of a file in elements/")
         elif not os.path.lexists(folder / "elements" / file):
