@@ -3,6 +3,7 @@
 import re
 import stat
 from collections.abc import Callable
+from itertools import islice
 from pathlib import Path
 
 from passplan.domain.elements import ElementSet
@@ -11,7 +12,7 @@ from passplan.workspace.omm_csv import read_csv
 from passplan.workspace.omm_json import read_json
 from passplan.workspace.omm_kvn import read_kvn
 from passplan.workspace.omm_xml import read_xml
-from passplan.workspace.page import MOST_MISTAKES, Page, Reading, page_of, shortened
+from passplan.workspace.page import MOST_MISTAKES, Page, Reading, page_of, printable, shortened
 from passplan.workspace.tle import is_element_line, read_tle
 
 MOST_BYTE = 64_000_000
@@ -44,30 +45,42 @@ def scan_elements(data: bytes | str, source: str) -> Reading:
         page = page_of(data, source)
     except InputError as error:
         return Reading(mistakes=list(error.mistakes))
-    reading = _reader(page)(page)
+    reader = next((reader for fits, reader in _READERS if fits(page)), _nothing)
+    reading = reader(page)
     if not reading.sets and not reading.mistakes:
         reading.mistakes.append(Mistake(source, "", "", "no element set found in it; fetch it again"))
     if reading.hopeless:
-        told = f"stopped after {len(reading.mistakes)} slips; this may not be a file of element sets"
+        told = f"stopped after {MOST_MISTAKES} slips; this may not be a file of element sets"
         reading.mistakes[MOST_MISTAKES:] = [Mistake(source, "", "", told)]
     return reading
 
 
-def _reader(page: Page) -> Callable[[Page], Reading]:
-    """Return the reader of the format `page` is in."""
-    text = page.text.lstrip()
-    if text.startswith("<"):
-        return read_xml
-    if _JSON_START.match(text):
-        return read_json
-    if _KVN_LINE.search(text):
-        return read_kvn
-    cells = text.partition("\n")[0].upper().replace('"', "").split(",")
-    if "EPOCH" in (cell.strip() for cell in cells):
-        return read_csv
-    if any(is_element_line(line.strip()) for line in page.lines):
-        return read_tle
-    return _nothing
+def _is_tle(page: Page) -> bool:
+    """Return whether one of the first two lines is an element line, whatever the name looks like."""
+    lines = (line.strip() for line in page.lines)
+    begin = islice((line for line in lines if line and not line.startswith("#")), 2)
+    return any(map(is_element_line, begin))
+
+
+def _is_xml(page: Page) -> bool:
+    return page.text.lstrip().startswith("<")
+
+
+def _is_json(page: Page) -> bool:
+    return _JSON_START.match(page.text.lstrip()) is not None
+
+
+def _is_kvn(page: Page) -> bool:
+    return _KVN_LINE.search(page.text) is not None
+
+
+def _is_csv(page: Page) -> bool:
+    cells = page.text.lstrip().partition("\n")[0].upper().replace('"', "").split(",")
+    return "EPOCH" in (cell.strip() for cell in cells)
+
+
+def _has_element_lines(page: Page) -> bool:
+    return any(is_element_line(line.strip()) for line in page.lines)
 
 
 def _nothing(page: Page) -> Reading:
@@ -75,6 +88,16 @@ def _nothing(page: Page) -> Reading:
     begin = next(line.strip() for line in page.lines if line.strip())
     told = "no element set found; it may be a TLE, or an OMM in KVN, XML, JSON or CSV"
     return Reading(mistakes=[Mistake(page.source, "", shortened(begin), told)])
+
+
+_READERS: tuple[tuple[Callable[[Page], bool], Callable[[Page], Reading]], ...] = (
+    (_is_tle, read_tle),
+    (_is_xml, read_xml),
+    (_is_json, read_json),
+    (_is_kvn, read_kvn),
+    (_is_csv, read_csv),
+    (_has_element_lines, read_tle),
+)
 
 
 def read_file(path: Path, source: str | None = None) -> list[ElementSet]:
@@ -87,7 +110,7 @@ def read_file(path: Path, source: str | None = None) -> list[ElementSet]:
     Raises:
         InputError: it cannot be read, or what `read_elements` raises.
     """
-    label = str(path) if source is None else source
+    label = printable(str(path) if source is None else source)
     return read_elements(_content(path, label), label)
 
 

@@ -219,7 +219,7 @@ class _Values:
         text, unit = _split_unit(value)
         expected = _UNITS.get(keyword, "")
         if unit and unit.replace(" ", "").lower() != expected.lower():
-            self._tell(keyword, f"must be in {expected or 'no unit'}, not in {unit[:20]}")
+            self._tell(keyword, f"must be in {expected or 'no unit'}, not in {unit[:20]!r}")
         elif len(text) > _MOST_NUMBER or not _NUMBER.fullmatch(text):
             self._tell(keyword, "must be a decimal number, such as 15.04 or 0.15E-3")
         elif not math.isfinite(float(text)):

@@ -105,6 +105,11 @@ def _refused(source: str, told: str) -> InputError:
     return InputError([Mistake(source, "", "", told)])
 
 
+def printable(text: str) -> str:
+    """Return `text` with "?" for what a terminal could act on or cannot show."""
+    return "".join(char if char.isprintable() else "?" for char in text)
+
+
 def shortened(text: str) -> str:
     """Return `text`, cut with dots when it is long."""
     return text if len(text) <= _MOST_SHOWN else text[: _MOST_SHOWN - 3] + "..."

@@ -73,10 +73,11 @@ def _eccentricity(value: float) -> str:
 
 
 def _rate(value: float) -> str:
-    text = _fixed(abs(value), 8)
-    if not text.startswith("0."):
+    text = _fixed(value, 8)
+    sign, digits = ("-", text[1:]) if text.startswith("-") else (" ", text)
+    if not digits.startswith("0."):
         raise ValueError(f"first derivative {value} rev/day2 is too large for its columns")
-    return ("-" if value < 0.0 else " ") + text[1:]
+    return f"{sign if digits.strip('0.') else ' '}{digits[1:]}"
 
 
 def _power(value: float) -> str:
