@@ -76,7 +76,8 @@ def _omm(fields: dict[str, str]) -> str:
     rest = [keyword for keyword in fields if keyword not in (*_HEADER, *_METADATA, *_ELEMENTS)]
     return (
         f'<omm id="CCSDS_OMM_VERS" version="3.0"><header>{_tags(fields, _HEADER[1:])}</header>\n'
-        f"<body><segment><metadata>{_tags(fields, _METADATA)}</metadata>\n<data><meanElements>{_tags(fields, _ELEMENTS)}\n"
+        f"<body><segment><metadata>{_tags(fields, _METADATA)}</metadata>\n"
+        f"<data><meanElements>{_tags(fields, _ELEMENTS)}\n"
         f"</meanElements><tleParameters>{_tags(fields, rest)}\n</tleParameters></data></segment></body></omm>"
     )
 
