@@ -12,6 +12,8 @@ from passplan.verify.evidence import Evidence, Placed, Run
 from passplan.verify.slot_times import slot_time
 from passplan.verify.tally import HALF_PERCENT, HALF_SECOND, TWENTIETH_DEG, Reading, Tally
 
+_WHOLE_SECONDS_S = 0.999  # a plan keeps whole seconds, a session may not
+
 
 def check_command_once(evidence: Evidence) -> Reading:
     """Every uplink slot is for a command that is wanted, each at most once; the outcomes told agree."""
@@ -172,7 +174,7 @@ def _weigh_run(tally: Tally, evidence: Evidence, run: Run) -> None:
     """Weigh one session's length and place."""
     name, length = run.session.name, run.end_s - run.start_s
     told = f"it runs {length} s, it takes {run.session.length_s:g} s"
-    tally.compare(name, abs(length - run.session.length_s), 1.0 - HALF_PERCENT, told)
+    tally.compare(name, abs(length - run.session.length_s), _WHOLE_SECONDS_S, told)
     inside = max(_room_s(run, begin, end) for begin, end in _windows(evidence, run.session))
     told = f"it reaches {-inside:.0f} s out of its window"
     tally.weigh(name, inside, HALF_SECOND, told)

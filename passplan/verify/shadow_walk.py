@@ -5,12 +5,15 @@
 """
 
 import numpy as np
+from numpy.typing import NDArray
 from skyfield.sgp4lib import EarthSatellite
 
 from passplan.domain.constants import DAY_S, EARTH_RADIUS_KM
 from passplan.domain.moments import Horizon, Span
 from passplan.domain.passes import Floats
 from passplan.verify.sun_orbit import sun_km
+
+Flags = NDArray[np.bool_]
 
 _STEP_S = 20.0
 _HALVINGS = 12  # 20 s / 2^12 = 5 ms
@@ -41,7 +44,7 @@ def shadow_spans(body: EarthSatellite, horizon: Horizon, begin_s: float, end_s: 
     return list(zip(edges[::2], edges[1::2], strict=True))
 
 
-def in_shadow(satellite_km: Floats, sun_km_: Floats) -> np.ndarray[tuple[int, ...], np.dtype[np.bool_]]:
+def in_shadow(satellite_km: Floats, sun_km_: Floats) -> Flags:
     """Return whether the Sun's centre is behind the limb, seen from each place; arrays (n, 3), one frame.
 
     False where a place is not a number.
@@ -53,9 +56,7 @@ def in_shadow(satellite_km: Floats, sun_km_: Floats) -> np.ndarray[tuple[int, ..
     return np.asarray(apart < np.arcsin(np.minimum(1.0, EARTH_RADIUS_KM / distance)))
 
 
-def _dark(
-    body: EarthSatellite, horizon: Horizon, seconds: Floats
-) -> np.ndarray[tuple[int, ...], np.dtype[np.bool_]]:
+def _dark(body: EarthSatellite, horizon: Horizon, seconds: Floats) -> Flags:
     """Return whether the satellite is in shadow at each second of the week."""
     whole, fraction = horizon.julian(0.0)
     days = fraction + seconds / DAY_S

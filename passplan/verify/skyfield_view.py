@@ -14,6 +14,7 @@ from passplan.domain.elements import ElementSet
 from passplan.domain.moments import Horizon, julian
 from passplan.domain.passes import Floats
 from passplan.domain.station import Station
+from passplan.verify.tally import TWENTIETH_DEG
 
 _SGP4_EPOCH_JD = 2433281.5  # SGP4 counts days from 1949 December 31, 00:00 UT
 _STEP_S = 240
@@ -38,6 +39,11 @@ class View:
     horizon_deg: Floats
     aos_s: float
     los_s: float
+
+    def above_deg(self, second: float) -> float:
+        """Return the height over the horizon at a moment, that of the nearest end outside the view."""
+        height = self.elevation_deg - self.horizon_deg
+        return float(np.interp(second - self.start_s, np.arange(len(height)), height))
 
     def seconds(self, begin_s: int, end_s: int) -> slice:
         """Return the slice of whole seconds begin_s <= t < end_s, at least one and only what is seen."""
@@ -126,8 +132,8 @@ def _look(
 
 
 def _up(station: Station, azimuth_deg: float, elevation_deg: float) -> bool:
-    """Return whether the satellite is over the station's horizon."""
-    return bool(elevation_deg >= horizon_deg(station, np.array([azimuth_deg]))[0])
+    """Return whether the satellite is not well under the station's horizon."""
+    return bool(elevation_deg >= horizon_deg(station, np.array([azimuth_deg]))[0] - TWENTIETH_DEG)
 
 
 def _joined(before: tuple[Floats, ...], after: tuple[Floats, ...]) -> tuple[Floats, ...]:
@@ -136,16 +142,19 @@ def _joined(before: tuple[Floats, ...], after: tuple[Floats, ...]) -> tuple[Floa
 
 
 def _crossing(above_deg: Floats, index: int, step: int) -> float:
-    """Walk from `index` until the height over the horizon is negative; return where it was zero."""
-    here = min(max(index, 0), len(above_deg) - 1)
-    while 0 <= here + step < len(above_deg):
-        height, beyond = float(above_deg[here]), float(above_deg[here + step])
-        if height < 0.0:
-            break
-        if not beyond >= 0.0:
-            return here + step * height / (height - beyond) if beyond < 0.0 else float(here)
+    """Walk from `index` until the satellite is well down; return where it crossed the horizon last.
+
+    A dip of less than a twentieth of a degree is no end of a pass: two readings of the
+    sky need not both see it.
+    """
+    start = here = min(max(index, 0), len(above_deg) - 1)
+    while 0 <= here + step < len(above_deg) and above_deg[here + step] >= -TWENTIETH_DEG:
         here += step
-    return float(here)
+    while here != start and above_deg[here] < 0.0:
+        here -= step
+    height = float(above_deg[here])
+    beyond = float(above_deg[here + step]) if 0 <= here + step < len(above_deg) else height
+    return here + step * height / (height - beyond) if height >= 0.0 > beyond else float(here)
 
 
 @cache
