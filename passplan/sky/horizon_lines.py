@@ -17,13 +17,13 @@ _APART_DEG = 2000.0  # the lines lie end to end on one axis, each from -360 to 7
 
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
 class HorizonLines:
-    """Straight lines between corners, station after station on one axis.
+    """Straight lines between corners, station after station on one axis; flat ones are left out there.
 
     Attributes:
         key_deg: corners' azimuths, three turns of them so that a satellite can be followed
             across north, station k shifted by k * 2000 deg, rising.
         elevation_deg: at the corners.
-        slope: rise of the line after each corner, deg per deg.
+        slope: rise of the line after each corner but the last, deg per deg.
         lowest_deg: lowest point of each of the s lines, shape (s,).
         jagged: whether each line depends on azimuth at all, shape (s,).
     """
@@ -35,7 +35,7 @@ class HorizonLines:
     jagged: NDArray[np.bool_]
 
     def elevation(self, row: Ints, azimuth_deg: Floats) -> Floats:
-        """Return the lines' elevation (deg) of stations `row` at azimuths in [0, 360], shape (m,)."""
+        """Return the lines' elevation (deg) of jagged stations `row` at azimuths in [0, 360], shape (m,)."""
         result: Floats = np.interp(row * _APART_DEG + azimuth_deg, self.key_deg, self.elevation_deg)
         return result
 
@@ -59,18 +59,19 @@ class HorizonLines:
 
 def horizon_lines(stations: Sequence[Station]) -> HorizonLines:
     """Return the horizon lines of `stations`, mask and least receive elevation in one."""
-    keys, elevations = [], []
-    for number, station in enumerate(stations):
-        azimuth, elevation = np.array(station.horizon).T
-        turns = number * _APART_DEG + np.array([[-360.0], [0.0], [360.0]])
-        keys.append((turns + azimuth).ravel())
-        elevations.append(np.tile(elevation, 3))
+    horizons = [station.horizon for station in stations]
+    keys, elevations = [np.zeros(0)], [np.zeros(0)]
+    for number, horizon in enumerate(horizons):
+        if len(horizon) > 1:
+            azimuth, elevation = np.array(horizon).T
+            turns = number * _APART_DEG + np.array([[-360.0], [0.0], [360.0]])
+            keys.append((turns + azimuth).ravel())
+            elevations.append(np.tile(elevation, 3))
     key_deg, elevation_deg = np.concatenate(keys), np.concatenate(elevations)
-    slope = np.append(np.diff(elevation_deg) / np.diff(key_deg), 0.0)
     return HorizonLines(
         key_deg=key_deg,
         elevation_deg=elevation_deg,
-        slope=slope,
-        lowest_deg=np.array([min(low for _, low in station.horizon) for station in stations]),
-        jagged=np.array([len(station.horizon) > 1 for station in stations]),
+        slope=np.diff(elevation_deg) / np.diff(key_deg),
+        lowest_deg=np.array([min(elevation for _, elevation in horizon) for horizon in horizons]),
+        jagged=np.array([len(horizon) > 1 for horizon in horizons]),
     )

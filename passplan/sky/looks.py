@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from passplan.sky.nodes import middles, stencils, weights
+from passplan.sky.nodes import expanded, middles, polynomials, stencils
 from passplan.sky.propagate import Arc
 from passplan.sky.sites import Sites
 
@@ -27,10 +27,9 @@ def state(arc: Arc, seconds: Floats) -> tuple[Floats, Floats]:
     """Return Earth-fixed positions (km) and their derivatives (km/s) at `seconds`, shape (3, m) each."""
     places = (seconds - arc.start_s) / arc.step_s
     first = stencils(np.floor(places).astype(np.intp), arc.nodes)
-    to_value, to_slope = weights(places - middles(first))
-    near = arc.itrs_km[:, first[:, np.newaxis] + np.arange(to_value.shape[1])]
-    velocity = np.einsum("imj,mj->im", near, to_slope) / arc.step_s
-    return np.einsum("imj,mj->im", near, to_value), velocity
+    axes = np.arange(3)[:, np.newaxis] + np.zeros_like(first)
+    position, per_node = expanded(polynomials(arc.itrs_km, axes, first), places - middles(first), 1)
+    return position, per_node / arc.step_s
 
 
 def looks(sites: Sites, row: Ints, position_km: Floats, velocity_km_s: Floats) -> Looks:

@@ -16,7 +16,7 @@ from passplan.sky.horizon_lines import HorizonLines
 from passplan.sky.nodes import expanded, middles, polynomials, stencils
 from passplan.sky.propagate import Arc
 from passplan.sky.ragged import counted
-from passplan.sky.roots import roots
+from passplan.sky.roots import roots, secant
 from passplan.sky.search import Stretches, holders
 from passplan.sky.sites import Sites
 
@@ -121,7 +121,7 @@ def _azimuth_turns(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
     """Return where the azimuth turns back: piece and place."""
     swing, _ = _swing(view.terms(knots.row, knots.place))
     low = np.flatnonzero(knots.linked & ((swing[:-1] > 0.0) != (swing[1:] > 0.0)))
-    return low, _refined(view, knots, low, (swing[low], swing[low + 1]), _swing)
+    return low, _refined(view, knots, low, (swing[low], swing[low + 1]), lambda terms, _: _swing(terms))
 
 
 def _corners(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
@@ -141,9 +141,9 @@ def _corners(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
     real = (aside[0] > 0.0) != (aside[1] > 0.0)
     across, along = across[real], along[real]
 
-    def beside(terms: Terms) -> tuple[Floats, Floats]:
-        value, slope, _ = terms
-        return value[0] * across - value[1] * along, slope[0] * across - slope[1] * along
+    def beside(terms: Terms, which: Ints | slice) -> tuple[Floats, Floats]:
+        (east, north, _), (d_east, d_north, _), _ = terms
+        return east * across[which] - north * along[which], d_east * across[which] - d_north * along[which]
 
     return low[real], _refined(view, knots, low[real], (aside[0][real], aside[1][real]), beside)
 
@@ -156,8 +156,8 @@ def _gap_turns(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
     turns = (start > 0.0) != (stop > 0.0)
     low, line = piece[turns], line.part(turns)
 
-    def rate(terms: Terms) -> tuple[Floats, Floats]:
-        return line.gap(terms)[1:]
+    def rate(terms: Terms, which: Ints | slice) -> tuple[Floats, Floats]:
+        return line.part(which).gap(terms)[1:]
 
     return low, _refined(view, knots, low, (start[turns], stop[turns]), rate)
 
@@ -172,8 +172,8 @@ def _above(view: _View, knots: _Knots) -> tuple[Ints, Floats, Floats]:
     low = np.flatnonzero(linked & (above[:-1] != above[1:]))
     line = _Line.of(view, knots, low)
 
-    def gap(terms: Terms) -> tuple[Floats, Floats]:
-        return line.gap(terms)[:2]
+    def gap(terms: Terms, which: Ints | slice) -> tuple[Floats, Floats]:
+        return line.part(which).gap(terms)[:2]
 
     place = _refined(view, knots, low, (excess[low], excess[low + 1]), gap)
     rising = above[low + 1]
@@ -193,20 +193,17 @@ def _refined(
     knots: _Knots,
     low: Ints,
     at_ends: tuple[Floats, Floats],
-    function: Callable[[Terms], tuple[Floats, Floats]],
+    function: Callable[[Terms, Ints | slice], tuple[Floats, Floats]],
 ) -> Floats:
     """Return the places in the pieces after knots `low` where a function of the motion changes sign."""
     start, stop = knots.place[low], knots.place[low + 1]
     curves, middle = view.curves(knots.row[low], start)
 
-    def at(place: Floats) -> tuple[Floats, Floats]:
-        value, slope, half_bend = expanded(curves, place, 2)
-        return function((value, slope, half_bend))
+    def at(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
+        value, slope, half_bend = expanded(curves[..., which], place, 2)
+        return function((value, slope, half_bend), which)
 
-    at_low, at_high = at_ends
-    guess = start + (stop - start) * (at_low / (at_low - at_high))
-    bracket = (start - middle, stop - middle)
-    return middle + roots(at, *bracket, guess - middle, at_low > 0.0, tolerance=view.tolerance)
+    return middle + roots(at, secant(start - middle, stop - middle, *at_ends), view.tolerance)
 
 
 def _swing(terms: Terms) -> tuple[Floats, Floats]:
@@ -234,7 +231,7 @@ class _Line:
         slope = view.lines.slope_at(row, azimuth_deg)
         return cls(azimuth_deg=azimuth_deg, elevation_deg=elevation_deg, slope=slope)
 
-    def part(self, which: Bools) -> "_Line":
+    def part(self, which: Bools | Ints | slice) -> "_Line":
         """Return some of the pieces."""
         azimuth_deg, elevation_deg = self.azimuth_deg[which], self.elevation_deg[which]
         return _Line(azimuth_deg=azimuth_deg, elevation_deg=elevation_deg, slope=self.slope[which])

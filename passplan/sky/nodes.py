@@ -5,6 +5,8 @@ as near to that as the ends of the row allow. Places are counted in nodes: 3.25 
 quarter of a step after node 3. Source: Lagrange's form through equally spaced points.
 """
 
+import math
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -15,6 +17,8 @@ POINTS = 12
 _MIDDLE = (POINTS - 1) / 2.0
 _OFFSETS = np.arange(POINTS)
 _TO_POWERS: Floats = np.linalg.inv(np.vander(_OFFSETS - _MIDDLE, increasing=True))
+_CHOICES = [np.array([[math.comb(p, k)] for p in range(k, POINTS)], dtype=np.float64) for k in range(4)]
+_BLOCK = 1024
 _SIDE = POINTS // 2 - 1
 _CENTRAL = 2 * _SIDE + 1
 
@@ -34,11 +38,11 @@ def polynomials(values: Floats, rows: Ints, first: Ints) -> Floats:
 
     Args:
         values: r functions at n nodes, shape (r, n), C-contiguous.
-        rows: which function, shape (..., m).
+        rows: which functions, c of them at each of m places, shape (c, m).
         first: first node, shape (m,).
 
     Returns:
-        Coefficients in nodes from the middle of the stencil, shape (POINTS, ..., m).
+        Coefficients in nodes from the middle of the stencil, shape (POINTS, c, m).
     """
     starts = rows * values.shape[1] + first
     taken = values.ravel().take(np.add.outer(_OFFSETS, starts))
@@ -47,23 +51,33 @@ def polynomials(values: Floats, rows: Ints, first: Ints) -> Floats:
 
 
 def expanded(coefficients: Floats, place: Floats, order: int) -> list[Floats]:
-    """Return value, slope, half the bend, ... of polynomials at `place`: `order` + 1 arrays (..., m).
+    """Return value, slope, half the bend, ... of polynomials at `place`: `order` + 1 arrays (c, m).
 
-    Taylor's coefficients, per node, by repeated synthetic division.
+    Taylor's coefficients, per node: the k-th is sum over p of (p choose k) c[p] place^(p - k).
 
     Args:
-        coefficients: from `polynomials`, shape (POINTS, ..., m).
+        coefficients: from `polynomials`, shape (POINTS, c, m).
         place: counted from the polynomials' middles, shape (m,).
-        order: of the highest derivative wanted.
+        order: of the highest derivative wanted, at most 3.
     """
-    terms = [coefficients[-1].copy(), *(np.zeros_like(coefficients[0]) for _ in range(order))]
-    for coefficient in coefficients[-2::-1]:
-        for k in range(order, 0, -1):
-            terms[k] *= place
-            terms[k] += terms[k - 1]
-        terms[0] *= place
-        terms[0] += coefficient
-    return terms
+    terms = np.empty((order + 1, *coefficients.shape[1:]))
+    for start in range(0, len(place), _BLOCK):  # what is in hand stays in the processor's cache
+        part = slice(start, start + _BLOCK)
+        powers = _powers(place[part])
+        for k in range(order + 1):
+            lowered = _CHOICES[k] * powers[: POINTS - k]
+            np.einsum("pcm,pm->cm", coefficients[k:, :, part], lowered, out=terms[k, :, part])
+    return list(terms)
+
+
+def _powers(place: Floats) -> Floats:
+    """Return `place` to the powers 0 to POINTS - 1, shape (POINTS, m)."""
+    powers = np.empty((POINTS, len(place)))
+    powers[0] = 1.0
+    powers[1] = place
+    for p in range(2, POINTS):
+        np.multiply(powers[p // 2], powers[(p + 1) // 2], out=powers[p])
+    return powers
 
 
 def _derivative_weights(place: float, points: int) -> Floats:
@@ -95,7 +109,7 @@ def weights(places: Floats) -> tuple[Floats, Floats]:
     Args:
         places: counted from the middle of the stencil, shape (m,).
     """
-    powers = np.vander(places, POINTS, increasing=True)
+    powers = _powers(places)
     lowered = np.zeros_like(powers)
-    lowered[:, 1:] = powers[:, :-1] * _OFFSETS[1:]
-    return powers @ _TO_POWERS, lowered @ _TO_POWERS
+    np.multiply(powers[:-1], _CHOICES[1], out=lowered[1:])
+    return powers.T @ _TO_POWERS, lowered.T @ _TO_POWERS

@@ -105,22 +105,23 @@ def _culminated(name: str, flown: Arc, places: Sites, seen: Stretches, end_s: fl
     aos_s, los_s = np.maximum(rise_s, 0.0), np.minimum(fall_s, end_s)
     holder = holders(row, aos_s, los_s, seen.peak_row, peak_s)
     held = holder >= 0
-    each = np.arange(len(row))
-    ends = looks(places, np.concatenate((row, row)), *state(flown, np.concatenate((aos_s, los_s))))
-    order_of = np.concatenate((each, each, holder[held]))
-    moments = np.concatenate((aos_s, los_s, peak_s[held]))
-    heights = np.concatenate((ends.elevation_deg, np.degrees(np.arcsin(seen.peak_sine[held]))))
-    tca_s, highest = np.empty_like(aos_s), np.empty_like(aos_s)
-    rising = np.argsort(heights, kind="stable")
-    tca_s[order_of[rising]] = moments[rising]  # of several, the last written stays: the highest
-    highest[order_of[rising]] = heights[rising]
+    lonely = np.ones(len(row), dtype=bool)
+    lonely[holder[held]] = False
+    ends = np.flatnonzero(lonely | (rise_s <= 0.0) | (fall_s >= end_s))
+    of = np.concatenate((ends, ends, holder[held]))
+    moments = np.concatenate((aos_s[ends], los_s[ends], peak_s[held]))
+    at_ends = looks(places, row[of[: 2 * len(ends)]], *state(flown, moments[: 2 * len(ends)]))
+    sine = np.concatenate((np.sin(np.radians(at_ends.elevation_deg)), seen.peak_sine[held]))
+    rising = np.argsort(sine, kind="stable")
+    tca_s = np.empty_like(aos_s)
+    tca_s[of[rising]] = moments[rising]  # of several, the last written stays: the highest
     return Found(
         satellite=name,
         station=row,
         aos_s=aos_s,
         tca_s=tca_s,
         los_s=los_s,
-        max_elevation_deg=highest,
+        max_elevation_deg=looks(places, row, *state(flown, tca_s)).elevation_deg,
         open_start=rise_s <= 0.0,
         open_end=fall_s >= end_s,
     )

@@ -6,7 +6,7 @@ from numpy.typing import NDArray
 from passplan.sky.nodes import expanded, middles, polynomials, stencils
 from passplan.sky.propagate import Arc
 from passplan.sky.ragged import counted
-from passplan.sky.roots import roots
+from passplan.sky.roots import roots, secant
 from passplan.sky.sites import Sites
 
 Floats = NDArray[np.float64]
@@ -34,14 +34,15 @@ def largest_range_rate_km_s(arc: Arc, sites: Sites, row: Ints, aos_s: Floats, lo
     range2 += np.einsum("ij,ij->j", arc.itrs_km, arc.itrs_km)
     range2 += np.einsum("ij,ij->i", sites.position_km, sites.position_km)[:, np.newaxis]
     first = stencils(np.floor(place).astype(np.intp), arc.nodes)
-    curves, middle = polynomials(range2, row[owner], first), middles(first)
+    curves, middle = polynomials(range2, row[owner][np.newaxis], first), middles(first)
     rate, (bend, _) = _rate(curves, place - middle), _bend(curves, place - middle)
     low = np.flatnonzero((owner[1:] == owner[:-1]) & ((bend[:-1] > 0.0) != (bend[1:] > 0.0)))
-    curves, middle = curves[:, low], middle[low]
+    curves, middle = curves[..., low], middle[low]
     start, stop = place[low] - middle, place[low + 1] - middle
-    guess = start + (stop - start) * (bend[low] / (bend[low] - bend[low + 1]))
     turn = roots(
-        lambda at: _bend(curves, at), start, stop, guess, bend[low] > 0.0, tolerance=_TOLERANCE_S / arc.step_s
+        lambda at, which: _bend(curves[..., which], at),
+        secant(start, stop, bend[low], bend[low + 1]),
+        _TOLERANCE_S / arc.step_s,
     )
     fastest = np.zeros(len(row))
     np.maximum.at(fastest, owner, np.abs(rate))
@@ -62,12 +63,12 @@ def _samples(begin: Floats, end: Floats) -> tuple[Ints, Floats]:
 
 def _rate(curves: Floats, place: Floats) -> Floats:
     """Return the range rate, km per node."""
-    range2, slope = expanded(curves, place, 1)
+    (range2,), (slope,) = expanded(curves, place, 1)
     rate: Floats = 0.5 * slope / np.sqrt(range2)
     return rate
 
 
 def _bend(curves: Floats, place: Floats) -> tuple[Floats, Floats]:
     """Return 2 q q'' - q'^2, of the sign of the range's second derivative, and its slope."""
-    range2, slope, half_bend, sixth = expanded(curves, place, 3)
+    (range2,), (slope,), (half_bend,), (sixth,) = expanded(curves, place, 3)
     return 4.0 * range2 * half_bend - slope * slope, 12.0 * range2 * sixth

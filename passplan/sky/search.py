@@ -17,14 +17,14 @@ from numpy.typing import NDArray
 
 from passplan.sky.nodes import expanded, middles, polynomials, slopes, stencils
 from passplan.sky.propagate import Arc, largest_acceleration_km_s2, lowest_and_highest_km
-from passplan.sky.roots import roots
+from passplan.sky.roots import Brackets, roots, secant
 from passplan.sky.sites import Sites
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 Bools = NDArray[np.bool_]
 
-_TOLERANCE_S = 1e-3  # of the last Newton step; what is left is of the order of its square
+_TOLERANCE_S = 1e-2  # of the last Newton step; what is left is its square over some 100 s
 
 
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
@@ -147,18 +147,28 @@ def _knots(scene: _Scene, row: Ints, node: Ints) -> tuple[_Knots, Floats]:
         scene, row[turns], node[turns], turning[turns], turning[turns + 1]
     )
     turn_excess = turn_height - scene.level_sine[row[turns]] * np.sqrt(turn_range2)
-    after = turns + 1
+    is_turn = np.zeros(len(row) + len(turns), dtype=bool)
+    is_turn[turns + np.arange(1, len(turns) + 1)] = True
+    before = np.cumsum(~is_turn) - 1  # the node at or before each knot
     knots = _Knots(
-        row=np.insert(row, after, row[turns]),
-        interval=np.insert(node, after, node[turns]),
-        place=np.insert(node.astype(np.float64), after, place),
-        excess=np.insert(excess, after, turn_excess),
-        turns=np.insert(np.zeros(len(row), dtype=bool), after, values=True),
-        linked=np.insert(linked, after, values=True),
+        row=row[before],
+        interval=node[before],
+        place=_merged(is_turn, node, place),
+        excess=_merged(is_turn, excess, turn_excess),
+        turns=is_turn,
+        linked=linked[before[:-1]],
     )
     high = tops[turns] & (turn_excess > 0.0)
     sine = turn_height / np.sqrt(turn_range2)
     return knots, np.stack((row[turns][high], place[high], sine[high]))
+
+
+def _merged(second: Bools, one: Floats | Ints, other: Floats) -> Floats:
+    """Return the elements of `one` and, where `second` says so, of `other`."""
+    both = np.empty(len(second))
+    both[~second] = one
+    both[second] = other
+    return both
 
 
 def _turned(
@@ -167,14 +177,13 @@ def _turned(
     """Return places after `node` where the elevation turns, and z and range2 there, shape (m,) each."""
     curves, middle = scene.polynomials(row, node)
 
-    def turning(place: Floats) -> tuple[Floats, Floats]:
-        (z, range2), (dz, drange2), (half_ddz, half_ddrange2) = expanded(curves, place, 2)
+    def turning(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
+        (z, range2), (dz, drange2), (half_ddz, half_ddrange2) = expanded(curves[..., which], place, 2)
         slope = 4.0 * half_ddz * range2 + dz * drange2 - 2.0 * z * half_ddrange2
         return 2.0 * dz * range2 - z * drange2, slope
 
     low = node - middle
-    guess = low + before / (before - after)
-    place = roots(turning, low, low + 1.0, guess, before > 0.0, tolerance=scene.tolerance)
+    place = roots(turning, secant(low, low + 1.0, before, after), scene.tolerance)
     z, range2 = expanded(curves, place, 0)[0]
     return place + middle, z, range2
 
@@ -188,17 +197,20 @@ def _crossings(scene: _Scene, knots: _Knots) -> tuple[Ints, Floats, Bools]:
     level_sine = scene.level_sine[row]
     curves, middle = scene.polynomials(row, knots.interval[low])
 
-    def excess(place: Floats) -> tuple[Floats, Floats]:
-        (z, range2), (dz, drange2) = expanded(curves, place, 1)
+    def excess(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
+        (z, range2), (dz, drange2) = expanded(curves[..., which], place, 1)
         range_km = np.sqrt(range2)
-        return z - level_sine * range_km, dz - 0.5 * level_sine * drange2 / range_km
+        sine = level_sine[which]
+        return z - sine * range_km, dz - 0.5 * sine * drange2 / range_km
 
     share = knots.excess[low] / (knots.excess[low] - knots.excess[high])
     share = np.where(knots.turns[low], np.sqrt(share), share)  # a parabola about its top
     share = np.where(knots.turns[high], 1.0 - np.sqrt(1.0 - share), share)
     start, stop = knots.place[low] - middle, knots.place[high] - middle
     guess = start + share * (stop - start)
-    place = roots(excess, start, stop, guess, above[low], tolerance=scene.tolerance)
+    place = roots(
+        excess, Brackets(low=start, high=stop, guess=guess, low_is_above=above[low]), scene.tolerance
+    )
     return row, place + middle, above[high]
 
 

@@ -16,9 +16,10 @@ from passplan.domain.moments import Horizon, Span, merged
 from passplan.domain.passes import ShadowModel
 from passplan.sky.nodes import POINTS, expanded, middles, polynomials, slopes, stencils
 from passplan.sky.propagate import Arc
-from passplan.sky.roots import roots
+from passplan.sky.roots import roots, secant
 
 Floats = NDArray[np.float64]
+Ints = NDArray[np.intp]
 
 _DISC = {"umbra": -1.0, "half": 0.0, "penumbra": 1.0}
 _TT_MINUS_UTC_DAY = 69.184 / DAY_S  # since 2017; the Sun moves 0.01 arcsec in a quarter of a second
@@ -92,34 +93,30 @@ def _crossings(depth: Floats, first: int, last: int, tolerance: float) -> Floats
         np.concatenate((np.arange(first, last + 1.0), _turns(depth, slope, node[turns], tolerance)))
     )
     curves, middle = _curves(depth, np.minimum(knots.astype(np.intp), last - 1))
-    at_knots = expanded(curves, knots - middle, 0)[0]
+    at_knots = expanded(curves, knots - middle, 0)[0][0]
     low = np.flatnonzero((at_knots[:-1] > 0.0) != (at_knots[1:] > 0.0))
-    curves, middle = curves[:, low], middle[low]
-    start, stop = knots[low] - middle, knots[low + 1] - middle
-    share = at_knots[low] / (at_knots[low] - at_knots[low + 1])
+    curves, middle = curves[..., low], middle[low]
 
-    def dark(place: Floats) -> tuple[Floats, Floats]:
-        value, rate = expanded(curves, place, 1)
+    def dark(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
+        (value,), (rate,) = expanded(curves[..., which], place, 1)
         return value, rate
 
-    return middle + roots(
-        dark, start, stop, start + share * (stop - start), at_knots[low] > 0.0, tolerance=tolerance
-    )
+    brackets = secant(knots[low] - middle, knots[low + 1] - middle, at_knots[low], at_knots[low + 1])
+    return middle + roots(dark, brackets, tolerance)
 
 
-def _turns(depth: Floats, slope: Floats, node: NDArray[np.intp], tolerance: float) -> Floats:
+def _turns(depth: Floats, slope: Floats, node: Ints, tolerance: float) -> Floats:
     """Return the places after `node` where the depth is greatest or least."""
     curves, middle = _curves(depth, node)
 
-    def rate(place: Floats) -> tuple[Floats, Floats]:
-        _, slope_there, half_bend = expanded(curves, place, 2)
+    def rate(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
+        _, (slope_there,), (half_bend,) = expanded(curves[..., which], place, 2)
         return slope_there, 2.0 * half_bend
 
     low = node - middle
-    share = slope[node] / (slope[node] - slope[node + 1])
-    return middle + roots(rate, low, low + 1.0, low + share, slope[node] > 0.0, tolerance=tolerance)
+    return middle + roots(rate, secant(low, low + 1.0, slope[node], slope[node + 1]), tolerance)
 
 
-def _curves(depth: Floats, node: NDArray[np.intp]) -> tuple[Floats, Floats]:
+def _curves(depth: Floats, node: Ints) -> tuple[Floats, Floats]:
     first = stencils(node, depth.shape[1])
-    return polynomials(depth, np.zeros_like(node), first), middles(first)
+    return polynomials(depth, np.zeros_like(node)[np.newaxis], first), middles(first)
