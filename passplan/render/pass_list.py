@@ -116,6 +116,7 @@ def _columns(listed: Sequence[ListedPass], mission: Mission, horizon: Horizon) -
     minutes, highest, useful, *wide = (
         Column(heading=heading, cells=cells(said), right=True, rank=rank) for heading, said, rank in figures
     )
+    wide = [column for column in wide if any(cell != "-" for cell in column.cells)]
     way = Column(heading="in > out", cells=cells(_way))
     light = Column(heading="light", cells=cells(lambda each: _light(each.sight, horizon)), rank=1)
     return [*texts, minutes, highest, way, useful, light, *wide]

@@ -188,7 +188,8 @@ def _battery(page: Page, plan: Plan) -> None:
             f"Battery{whose}: lowest {charge(battery.lowest_fraction)} at {day_clock(at)} "
             f"(floor {charge(battery.floor_fraction)});",
             f"{charge(battery.start_fraction)} at the start{guess};",
-            f"{charge(battery.end_fraction)} at the end (wanted {charge(battery.end_wanted_fraction)}).",
+            f"{charge(battery.end_fraction)} when the look-ahead ends "
+            f"(wanted {charge(battery.end_wanted_fraction)}).",
         )
         if battery.floor_in_force_fraction < battery.floor_fraction:
             page.sentences(

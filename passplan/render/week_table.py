@@ -108,7 +108,7 @@ def _figures(plan: Plan) -> list[str]:
     placed = sum(each.placed for each in plan.commands)
     said = [f"{count(len(plan.contacts), 'contact')}." if plan.contacts else "No contact is planned."]
     if plan.data:
-        said.append(f"{size(down)} down of {size(wanted)} wanted.")
+        said.append(f"{size(down)} expected down of {size(wanted)} wanted.")
     if plan.commands:
         said.append(f"{placed} of {count(len(plan.commands), 'command')} up.")
     for battery in plan.batteries:
