@@ -45,12 +45,13 @@ def changes_text(editions: Sequence[IssuedPlan], mission: Mission, width: int) -
     page = Page(width)
     plan = editions[-1].plan
     title = f"Edition {plan.edition} of week {plan.horizon.week}"
-    if _before(editions) is None:
+    before = _before(editions)
+    if before is None:
         people = len({handle for each in plan.contacts for handle in each.operators})
         said = f"{count(len(plan.contacts), 'contact')} for {count(people, 'person', 'people')}"
         page.sentences(f"{title} is the first: {said}.", style=STRONG)
         return page.text()
-    changes = list(_changes(editions, mission))
+    changes = list(_changes(before, editions[-1], mission))
     people = len({change.person for change in changes})
     said = (
         f"{count(len(changes), 'change')} for {count(people, 'person', 'people')}"
@@ -91,11 +92,8 @@ def _before(editions: Sequence[IssuedPlan]) -> IssuedPlan | None:
     return next((each for each in reversed(editions[:-1]) if each.plan.horizon.week == week), None)
 
 
-def _changes(editions: Sequence[IssuedPlan], mission: Mission) -> Iterator[Change]:
+def _changes(before: IssuedPlan, last: IssuedPlan, mission: Mission) -> Iterator[Change]:
     """Yield the changes by person, each person's in order of time."""
-    last, before = editions[-1], _before(editions)
-    if before is None:
-        return
     named = [person.handle for person in mission.operators]
     both = (*before.plan.contacts, *last.plan.contacts)
     named += sorted({handle for each in both for handle in each.operators} - set(named))

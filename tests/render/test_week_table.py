@@ -154,10 +154,18 @@ def test_an_empty_week_is_still_an_answer() -> None:
 def test_several_satellites_are_told_apart() -> None:
     second = replace(plan().batteries[0], satellite="Teasel-2", lowest_fraction=0.65)
     other = contact("SKE-09", (2, 22, 30), 300, ("QY1K",), satellite="Teasel-2")
-    both = replace(plan(), contacts=(*plan().contacts, other), batteries=(*plan().batteries, second))
+    stuck = replace(plan().data[0], satellite="Teasel-2", on_board_end_byte=0.0, down_byte=0.0)
+    both = replace(
+        plan(),
+        contacts=(*plan().contacts, other),
+        batteries=(*plan().batteries, second),
+        data=(*plan().data, stuck),
+    )
     text = said(both, 100, replace(mission(), satellites=(satellite(), satellite("Teasel-2"))))
     assert "Lowest charge of Teasel-2 65 % (floor 60 %)." in text
     assert "Battery of Teasel-2: lowest 65 %" in text
+    (row,) = [line for line in text.splitlines() if line.startswith("  images  Teasel-2")]
+    assert row.split()[-2:] == ["-", "-"]
     (line,) = [line for line in text.splitlines() if " SKE-09 " in line]
     assert "Teasel-2" in line
 
