@@ -9,6 +9,7 @@ from passplan.domain.plan import Contact, Plan, SlotKind
 from passplan.render.contact_words import kinds_down, short_command, total_down
 from passplan.render.typeset import BROKEN, STRONG, THIN, Column, Page
 from passplan.render.week_account import add_account
+from passplan.render.week_proof import add_proof
 from passplan.render.words import (
     charge,
     clock,
@@ -46,6 +47,7 @@ def week_text(plan: Plan, mission: Mission, width: int) -> Text:
     page.line()
     page.rule()
     add_account(page, plan, mission)
+    add_proof(page, plan)
     return page.text()
 
 
