@@ -1,5 +1,7 @@
 """Below the contacts: commands, sessions, data, people, battery and silence."""
 
+from collections.abc import Iterable
+
 from passplan.domain.mission import Mission
 from passplan.domain.plan import CommandOutcome, Plan
 from passplan.render.typeset import BROKEN, THIN, Column, Page
@@ -204,6 +206,6 @@ def _silence(page: Page, plan: Plan, mission: Mission) -> None:
             page.sentences(f"{said}.")
 
 
-def _label_width(names: object) -> int:
+def _label_width(names: Iterable[str]) -> int:
     """Return the width of the widest label, within reason."""
-    return min(_MOST_NAME, max((len(name) for name in names), default=0))  # type: ignore[attr-defined]
+    return min(_MOST_NAME, max((len(name) for name in names), default=0))
