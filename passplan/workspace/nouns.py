@@ -74,8 +74,9 @@ def shown(value: object) -> str:
 
 
 def nearest(word: str, known: list[str]) -> str:
-    """Return ', did you mean "..."?' for a word close to a known one, else an empty text."""
-    close = difflib.get_close_matches(word, known, n=1, cutoff=0.5)
+    """Return '; did you mean "..."?' for a word close to a known one, else an empty text."""
+    longer = [name for name in known if name.startswith(word + "_")]  # the unit was forgotten
+    close = longer or difflib.get_close_matches(word, known, n=1, cutoff=0.6)
     return f'; did you mean "{close[0]}"?' if close else ""
 
 

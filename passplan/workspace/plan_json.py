@@ -19,6 +19,7 @@ from functools import singledispatch
 from typing import Any, TypeAlias
 
 from pydantic import TypeAdapter, ValidationError
+from pydantic_core import ErrorDetails
 
 from passplan.domain.errors import InputError, Mistake
 from passplan.domain.moments import Horizon, iso
@@ -37,6 +38,7 @@ ORDER = (
 
 _DIGITS = {"byte": 1, "deg": 4, "km": 3}
 _WIDEST = 110
+_NO_MOMENT = "no moment: "
 _BY_NAME = (
     "lowest_fraction",
     "lowest_s",
@@ -208,7 +210,7 @@ def _seconds(value: Json, horizon: Horizon) -> Json:
     try:
         return horizon.seconds(datetime.fromisoformat(value))
     except (ValueError, TypeError):
-        return f"not a moment: {value}"
+        return f"{_NO_MOMENT}{value}"
 
 
 def _mistakes(error: ValidationError, source: str) -> list[Mistake]:
@@ -217,10 +219,20 @@ def _mistakes(error: ValidationError, source: str) -> list[Mistake]:
     for item in error.errors(include_url=False):
         names = [f"[{part}]" if isinstance(part, int) else "." + _outside(part) for part in item["loc"]]
         key = "".join(names).lstrip(".")
-        text = "" if isinstance(item["input"], dict | list) else str(item["input"])[:60]
-        told = "missing" if item["type"] == "missing" else item["msg"].lower().removeprefix("input ")
-        found.setdefault(key, Mistake(source, key, "" if item["type"] == "missing" else text, told))
+        missing = item["type"] == "missing"
+        bare = missing or isinstance(item["input"], dict | list)
+        text = "" if bare else str(item["input"]).removeprefix(_NO_MOMENT)[:60]
+        found.setdefault(key, Mistake(source, key, text, "missing" if missing else _slip(key, item)))
     return list(found.values())
+
+
+def _slip(key: str, item: ErrorDetails) -> str:
+    """Return what is wrong at one key, in words."""
+    if key.rpartition(".")[2].partition("[")[0].endswith("_utc"):
+        return "expected a moment such as 2026-12-07T05:12:00Z"
+    if item["type"] == "enum":
+        return "no such rule"
+    return item["msg"].lower().removeprefix("input ")
 
 
 def _text(value: Json, indent: str = "") -> str:

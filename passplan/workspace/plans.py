@@ -112,12 +112,11 @@ class PlanStore:
         """
         content = to_json(plan).encode("ascii")
         path = self.path(plan.horizon.week, plan.edition)
-        line = Entered(
-            week=plan.horizon.week,
-            edition=plan.edition,
-            made_utc=made_utc,
-            sha256=hashlib.sha256(content).hexdigest(),
-        )
+        digest = hashlib.sha256(content).hexdigest()
+        line = Entered(week=plan.horizon.week, edition=plan.edition, made_utc=made_utc, sha256=digest)
+        if path.exists():
+            told = "there already, and editions are never overwritten"
+            raise InputError([Mistake(self._told(path), "", "", told)])
         try:
             self.home.mkdir(exist_ok=True)
             _publish(path, content)
@@ -126,9 +125,6 @@ class PlanStore:
             except BaseException:
                 path.unlink()
                 raise
-        except FileExistsError:
-            told = "there already, and editions are never overwritten"
-            raise InputError([Mistake(self._told(path), "", "", told)]) from None
         except OSError as error:
             told = f"cannot be written: {(error.strerror or str(error)).lower()}"
             raise InputError([Mistake(self._told(path), "", "", told)]) from None

@@ -65,6 +65,7 @@ def read_entries(folder: Path) -> list[Entry]:
             mistakes.extend(wrong)
             named = data if isinstance(data, dict) else {}
             entries.append(Entry(kind=noun, document=document, at=at, data=named, noun=made))
+    unsure |= {Satellite, Station} - {entry.kind for entry in entries}  # an empty folder, told above
     mistakes.extend(reference_mistakes(entries, unsure, folder))
     if mistakes:
         raise InputError(_in_order(mistakes, contents.files))

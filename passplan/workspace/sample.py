@@ -3,9 +3,10 @@
 import os
 from pathlib import Path
 
-import passplan
 from passplan.domain.errors import InputError, Mistake
 from passplan.workspace.documents import is_toml
+
+PACKAGE = Path(__file__).parent.parent
 
 
 def make_workspace(folder: Path) -> tuple[Path, ...]:
@@ -41,7 +42,7 @@ def make_workspace(folder: Path) -> tuple[Path, ...]:
 
 def sample_files() -> dict[str, Path]:
     """Return the sample's files: path in the workspace to where it lies now, in order."""
-    here = Path(passplan.__file__).parent / "sample"
+    here = PACKAGE / "sample"
     files = {path.relative_to(here).as_posix(): path for path in here.glob("*.toml")}
     files |= {path.relative_to(here).as_posix(): path for path in here.glob("satellites/*.toml")}
     files |= {f"stations/{path.name}": path for path in sample_folder("stations").iterdir() if is_toml(path)}
@@ -52,6 +53,5 @@ def sample_files() -> dict[str, Path]:
 
 def sample_folder(name: str) -> Path:
     """Return where `stations` or `tle_samples` lies: in the package, or beside it in a checkout."""
-    package = Path(passplan.__file__).parent
-    inside = package / "sample" / name
-    return inside if inside.is_dir() else package.parent / name
+    inside = PACKAGE / "sample" / name
+    return inside if inside.is_dir() else PACKAGE.parent / name

@@ -3,6 +3,7 @@
 import json
 import re
 from pathlib import Path
+from types import NoneType
 from typing import Any, TypeAlias
 
 from pydantic import TypeAdapter
@@ -69,7 +70,7 @@ def _plain(schema: Json) -> Json:
     if not isinstance(schema, dict):
         return schema
     kept = {key: _plain(part) for key, part in schema.items() if key != "title" or not isinstance(part, str)}
-    if kept.get("default", "") is None:
+    if isinstance(kept.get("default", ""), dict | NoneType):  # a whole table tells an editor nothing
         del kept["default"]
     if "anyOf" in kept:
         kept["anyOf"] = [part for part in kept["anyOf"] if part != {"type": "null"}]

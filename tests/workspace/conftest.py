@@ -1,5 +1,9 @@
-"""A fresh copy of the sample workspace, and a way to spoil it."""
+"""A fresh copy of a workspace that never changes, and a way to spoil it.
 
+`frozen_week/` was once the sample; the sample may be tuned without touching these tests.
+"""
+
+import shutil
 from collections.abc import Callable
 from pathlib import Path
 
@@ -7,7 +11,6 @@ import pytest
 
 from passplan.domain.errors import InputError
 from passplan.workspace.read import read_workspace
-from passplan.workspace.sample import make_workspace
 
 Spoil = Callable[[str, str, str], None]
 Told = Callable[[], list[str]]
@@ -16,7 +19,7 @@ Told = Callable[[], list[str]]
 @pytest.fixture
 def workspace(tmp_path: Path) -> Path:
     folder = tmp_path / "week"
-    make_workspace(folder)
+    shutil.copytree(Path(__file__).parent / "frozen_week", folder)
     return folder
 
 

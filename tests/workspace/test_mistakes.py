@@ -61,64 +61,82 @@ SLIPS = {
         SAT,
         "capacity_wh = 37.4\n",
         "",
-        "satellites/teasel-1.toml: battery.capacity_wh (line 38): missing; "
-        "expected a number in watt-hours, more than 0 and at most 100000",
+        (
+            "satellites/teasel-1.toml: battery.capacity_wh (line 38): missing; "
+            "expected a number in watt-hours, more than 0 and at most 100000"
+        ),
     ),
     "unknown zone": (
         QUA,
         "Europe/Dublin",
         "Europe/Quarry",
-        "stations/qua.toml: time_zone (line 7): 'Europe/Quarry': "
-        'no such time zone; use an IANA name such as "Europe/Dublin"',
+        (
+            "stations/qua.toml: time_zone (line 7): 'Europe/Quarry': "
+            'no such time zone; use an IANA name such as "Europe/Dublin"'
+        ),
     ),
     "a zone that leads out of its folder": (
         QUA,
         "Europe/Dublin",
         "../../etc/passwd",
-        "stations/qua.toml: time_zone (line 7): '../../etc/passwd': "
-        'no such time zone; use an IANA name such as "Europe/Dublin"',
+        (
+            "stations/qua.toml: time_zone (line 7): '../../etc/passwd': "
+            'no such time zone; use an IANA name such as "Europe/Dublin"'
+        ),
     ),
     "small code": (
         QUA,
         'code = "QUA"',
         'code = "Q/A"',
-        "stations/qua.toml: code (line 3): 'Q/A': "
-        "2 to 8 capital letters and digits, a letter first, such as QUA",
+        (
+            "stations/qua.toml: code (line 3): 'Q/A': "
+            "2 to 8 capital letters and digits, a letter first, such as QUA"
+        ),
     ),
     "union": (
         COM,
         "worth = 40.0",
         'worth = "huge"',
-        "commands.toml: command[24].worth (line 199): 'huge': "
-        'expected "low", "normal", "high" or a number from 0 to 1000000',
+        (
+            "commands.toml: command[24].worth (line 199): 'huge': "
+            'expected "low", "normal", "high" or a number from 0 to 1000000'
+        ),
     ),
     "set words": (
         SAT,
         'modulation = "gmsk"',
         'modulation = "fm"',
-        "satellites/teasel-1.toml: radio.modulation (line 10): 'fm': "
-        'expected "fsk-noncoherent", "fsk-coherent", "dpsk", "bpsk" or "gmsk"',
+        (
+            "satellites/teasel-1.toml: radio.modulation (line 10): 'fm': "
+            'expected "fsk-noncoherent", "fsk-coherent", "dpsk", "bpsk" or "gmsk"'
+        ),
     ),
     "attitude": (
         SAT,
         'attitude = "sun-pointing"',
         "attitude = 1.5",
-        "satellites/teasel-1.toml: power.attitude (line 32): '1.5': "
-        'expected "sun-pointing", "tumbling" or a number from 0 to 1',
+        (
+            "satellites/teasel-1.toml: power.attitude (line 32): '1.5': "
+            'expected "sun-pointing", "tumbling" or a number from 0 to 1'
+        ),
     ),
     "text for a moment": (
         COM,
         "deadline_utc = 2026-12-08T12:00:00Z",
         'deadline_utc = "next Tuesday"',
-        "commands.toml: command[1].deadline_utc (line 21): 'next Tuesday': "
-        "expected a moment in UTC such as 2026-12-07T05:12:00Z, no quotes",
+        (
+            "commands.toml: command[1].deadline_utc (line 21): 'next Tuesday': "
+            "expected a moment in UTC such as 2026-12-07T05:12:00Z, no quotes"
+        ),
     ),
     "moment without a zone": (
         COM,
         "deadline_utc = 2026-12-08T12:00:00Z",
         "deadline_utc = 2026-12-08T12:00:00",
-        "commands.toml: command[1].deadline_utc (line 21): '2026-12-08 12:00:00': "
-        "needs a zone: write it in UTC with a Z, 2026-12-07T05:12:00Z",
+        (
+            "commands.toml: command[1].deadline_utc (line 21): '2026-12-08 12:00:00': "
+            "needs a zone: write it in UTC with a Z, 2026-12-07T05:12:00Z"
+        ),
     ),
     "moment long ago": (
         COM,
@@ -136,15 +154,19 @@ SLIPS = {
         OPS,
         "first_day = 2026-12-10,",
         "first_day = 2026-12-10T00:00:00Z,",
-        "operators.toml: operator[4].away[0].first_day (line 53): '2026-12-10T00:00:00Z': "
-        "expected a day such as 2026-12-07, no quotes",
+        (
+            "operators.toml: operator[4].away[0].first_day (line 53): '2026-12-10T00:00:00Z': "
+            "expected a day such as 2026-12-07, no quotes"
+        ),
     ),
     "one text for a list": (
         OPS,
         'stations = ["SKE"]\nmay_control = true\ntime_zone = "Europe/Oslo"\nhours = [{',
         'stations = "SKE"\nmay_control = true\ntime_zone = "Europe/Oslo"\nhours = [{',
-        "operators.toml: operator[4].stations (line 49): 'SKE': "
-        "expected a list in square brackets, each a text in quotes",
+        (
+            "operators.toml: operator[4].stations (line 49): 'SKE': "
+            "expected a list in square brackets, each a text in quotes"
+        ),
     ),
     "half a pair": (
         QUA,
@@ -168,8 +190,10 @@ SLIPS = {
         SAT,
         "transmit_floor_fraction = 0.70",
         "transmit_floor_fraction = 0.50",
-        "satellites/teasel-1.toml: battery.transmit_floor_fraction (line 42): '0.5': "
-        "must not be under floor_fraction",
+        (
+            "satellites/teasel-1.toml: battery.transmit_floor_fraction (line 42): '0.5': "
+            "must not be under floor_fraction"
+        ),
     ),
     "a table written once": (
         OPS,
@@ -187,15 +211,19 @@ SLIPS = {
         "mission.toml",
         "[gives]",
         "[[stations]]\n[gives]",
-        "mission.toml: stations (line 22): "
-        "not in this file; see satellites/, stations/, operators.toml and commands.toml",
+        (
+            "mission.toml: stations (line 22): "
+            "not in this file; see satellites/, stations/, operators.toml and commands.toml"
+        ),
     ),
     "missing quotes": (
         QUA,
         'name = "Quarry Hill"',
         "name = Quarry Hill",
-        "stations/qua.toml: line 2, column 8: 'name = Quarry Hill': "
-        "not TOML: invalid value; a text needs quotes, a number a point and no unit",
+        (
+            "stations/qua.toml: line 2, column 8: 'name = Quarry Hill': "
+            "not TOML: invalid value; a text needs quotes, a number a point and no unit"
+        ),
     ),
     "said twice": (
         QUA,
@@ -213,8 +241,10 @@ SLIPS = {
         "mission.toml",
         '"2026-W50"',
         '"2026-W54"',
-        "mission.toml: pinned_week (line 5): '2026-W54': "
-        "expected an ISO week such as 2026-W50 (a year has 52 or 53)",
+        (
+            "mission.toml: pinned_week (line 5): '2026-W54': "
+            "expected an ISO week such as 2026-W50 (a year has 52 or 53)"
+        ),
     ),
     "a week without end": (
         "mission.toml",
