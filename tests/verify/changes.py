@@ -233,3 +233,12 @@ def between_stations(week: Week) -> Week:
     """Give one person the last contact in the west and the next one in the east, a day apart and far."""
     served = operator("Q1AB", travel_min=2000.0)(week)
     return field("QUB-02", operators=("Q1AB", "Q3EF"))(served)
+
+
+def placed_without_slot(week: Week) -> Week:
+    """Say a command is placed that has no slot anywhere."""
+    wanted = replace(week.mission.commands[3], name="spare keys")
+    told_of = replace(week.plan.commands[0], name="spare keys", must=False, contact="")
+    return plan(
+        mission(week, commands=(*week.mission.commands, wanted)), commands=(*week.plan.commands, told_of)
+    )

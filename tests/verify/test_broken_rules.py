@@ -34,6 +34,7 @@ from tests.verify.changes import (
     outcome,
     over_another,
     own_order,
+    placed_without_slot,
     plan,
     planning,
     radio,
@@ -131,6 +132,7 @@ BREAKAGES: list[tuple[str, Rule, Change]] = [
     ("a low end claimed to be enough", Rule.END_CHARGE, claims_low_end),
     ("outcome without a slot", Rule.COMMAND_ONCE, outcome("set clock", contact="QUB-02")),
     ("placed nowhere", Rule.COMMAND_ONCE, outcome("set clock", contact="")),
+    ("placed without any slot", Rule.COMMAND_ONCE, placed_without_slot),
     ("slot without an outcome", Rule.COMMAND_ONCE, outcome("set clock", placed=False, contact="")),
     ("left for next week in this one", Rule.COMMAND_ONCE, outcome("set clock", left_for_next_week=True)),
     (
