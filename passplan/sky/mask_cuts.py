@@ -152,7 +152,8 @@ def _gap_turns(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
     """Return where elevation less line turns: piece and place."""
     piece = np.flatnonzero(knots.linked)
     line = _Line.of(view, knots, piece)
-    start, stop = (line.gap(view.terms(knots.row[at], knots.place[at]))[1] for at in (piece, piece + 1))
+    value, slope, half_bend = view.terms(knots.row, knots.place)
+    start, stop = (line.gap((value[:, at], slope[:, at], half_bend[:, at]))[1] for at in (piece, piece + 1))
     turns = (start > 0.0) != (stop > 0.0)
     low, line = piece[turns], line.part(turns)
 

@@ -18,8 +18,8 @@ from passplan.sky.nodes import POINTS
 Floats = NDArray[np.float64]
 
 _SGP4_DAY_ZERO = 2433281.5  # sgp4init counts days from 1949-12-31 00:00 UTC
-_STEPS_S = (300, 240, 180, 120, 60, 30)  # whole seconds, for the second-by-second tracks
-_STEP_RAD = 0.35
+_STEPS_S = (300, 240, 180, 150, 120, 90, 60, 30)  # whole seconds, for the second-by-second tracks
+_STEP_RAD = 0.28
 
 
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
@@ -100,7 +100,7 @@ def satrec(element_set: ElementSet) -> Satrec:
 
 
 def step_s(element_set: ElementSet) -> int:
-    """Return a step at which interpolation between nodes stays within 0.1 m.
+    """Return a step at which interpolation between nodes stays within 2 cm.
 
     The faster the satellite turns about the Earth at its lowest point, and the more
     eccentric its orbit, the shorter (limits found by trial, see the tests).

@@ -49,12 +49,30 @@ class Stretches:
 
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
 class _Scene:
-    """One satellite over s stations: `pair` (2 s, n) has rows z, then rows range2; `rates` their slopes."""
+    """One satellite over s stations.
+
+    Attributes:
+        pair: rows z, then rows range2, shape (2 s, n).
+        directions: what positions are multiplied by for z, then for range2, shape (2 s, 3).
+        motion: velocity per node and half the rate of the squared distance, shape (4, n).
+        level_sine: sin of the levels, shape (s,).
+        tolerance: of roots, in nodes.
+    """
 
     pair: Floats
-    rates: Floats
+    directions: Floats
+    motion: Floats
     level_sine: Floats
     tolerance: float
+
+    def rates(self, row: Ints, node: Ints) -> tuple[Floats, Floats]:
+        """Return the slopes of z and range2 at nodes, shape (m,) each."""
+        moving = self.motion[:, node]
+        height, range2 = (
+            np.einsum("mi,im->m", self.directions[rows], moving[:3])
+            for rows in (row, row + len(self.level_sine))
+        )
+        return height, range2 + 2.0 * moving[3]
 
     def polynomials(self, rows: Ints, intervals: Ints) -> tuple[Floats, Floats]:
         """Return polynomials of z and range2 (POINTS, 2, m) after nodes `intervals`, and their middles."""
@@ -101,16 +119,22 @@ def stretches(arc: Arc, sites: Sites, level_sine: Floats, first: int, last: int)
 
 
 def _scene(arc: Arc, sites: Sites, level_sine: Floats) -> _Scene:
-    """Return z and range2 of every station at every node: two matrix products."""
+    """Return z and range2 of every station at every node: one matrix product."""
     stations = len(level_sine)
     directions = np.concatenate((sites.up, -2.0 * sites.position_km))
     velocity = slopes(arc.itrs_km)
-    pair, rates = directions @ arc.itrs_km, directions @ velocity
+    pair = directions @ arc.itrs_km
     pair[:stations] -= sites.height_km[:, np.newaxis]
     pair[stations:] += np.einsum("ij,ij->j", arc.itrs_km, arc.itrs_km)
     pair[stations:] += np.einsum("ij,ij->i", sites.position_km, sites.position_km)[:, np.newaxis]
-    rates[stations:] += 2.0 * np.einsum("ij,ij->j", arc.itrs_km, velocity)
-    return _Scene(pair=pair, rates=rates, level_sine=level_sine, tolerance=_TOLERANCE_S / arc.step_s)
+    outward = np.einsum("ij,ij->j", arc.itrs_km, velocity)
+    return _Scene(
+        pair=pair,
+        directions=directions,
+        motion=np.concatenate((velocity, outward[np.newaxis])),
+        level_sine=level_sine,
+        tolerance=_TOLERANCE_S / arc.step_s,
+    )
 
 
 def _least_height_km(arc: Arc, sites: Sites, level_sine: Floats) -> Floats:
@@ -136,7 +160,8 @@ def _knots(scene: _Scene, row: Ints, node: Ints) -> tuple[_Knots, Floats]:
     """Return the candidate nodes and the turning points between them, and sin(elevation) at the knots."""
     stations = len(scene.level_sine)
     height, range2 = scene.pair[row, node], scene.pair[row + stations, node]
-    turning = 2.0 * scene.rates[row, node] * range2 - height * scene.rates[row + stations, node]
+    height_rate, range2_rate = scene.rates(row, node)
+    turning = 2.0 * height_rate * range2 - height * range2_rate
     excess = height - scene.level_sine[row] * np.sqrt(range2)
     linked = (np.diff(node) == 1) & (np.diff(row) == 0)
     climbs, above = turning > 0.0, excess > 0.0
