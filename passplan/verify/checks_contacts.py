@@ -105,24 +105,29 @@ def _pairs(cases: tuple[Case, ...]) -> list[tuple[Case, Case]]:
 def check_half_duplex(evidence: Evidence) -> Reading:
     """Acquire first, close last, commands and data between, nothing over another."""
     tally = Tally(Rule.HALF_DUPLEX, "s")
-    planning = evidence.mission.planning
     for case in evidence.cases:
-        slots = case.contact.slots
-        kinds = [slot.kind for slot in slots]
-        if len(kinds) < 2 or kinds[0] != "acquire" or kinds[-1] != "close":
-            tally.fail(case.id, "a contact begins with acquire and ends with close")
-            continue
-        if not {"uplink", "downlink"}.issuperset(kinds[1:-1]):
+        contact, slots = case.contact, case.contact.slots
+        _weigh_ends(tally, evidence, case)
+        if any(slot.kind in {"acquire", "close"} for slot in slots[1:-1]):
             tally.fail(case.id, "between acquire and close stand only uplink and downlink")
         if any(bool(slot.command) != (slot.kind == "uplink") for slot in slots):
             tally.fail(case.id, "every uplink slot is for one command, no other slot is for any")
-        if slots[0].start_s != case.contact.start_s or slots[-1].end_s != case.contact.end_s:
-            tally.fail(case.id, "the slots do not reach from the contact's start to its end")
-        for slot, least in ((slots[0], planning.acquire_s), (slots[-1], planning.close_s)):
-            told = f"{slot.kind} has {slot.end_s - slot.start_s} s, it takes {least:g} s"
-            tally.weigh(case.id, slot.end_s - slot.start_s - least, HALF_SECOND, told)
+        if any(slot.start_s < contact.start_s or slot.end_s > contact.end_s for slot in slots):
+            tally.fail(case.id, "a slot reaches out of the contact")
         _weigh_order(tally, evidence, case)
     return tally.reading
+
+
+def _weigh_ends(tally: Tally, evidence: Evidence, case: Case) -> None:
+    """Weigh acquire at the very start and close at the very end; what takes no time needs no slot."""
+    planning, contact = evidence.mission.planning, case.contact
+    first = [slot for slot in contact.slots[:1] if slot.kind == "acquire" and slot.start_s == contact.start_s]
+    last = [slot for slot in contact.slots[-1:] if slot.kind == "close" and slot.end_s == contact.end_s]
+    for kind, found, least in (("acquire", first, planning.acquire_s), ("close", last, planning.close_s)):
+        length = sum(slot.end_s - slot.start_s for slot in found)
+        where = "begins" if kind == "acquire" else "ends"
+        told = f"it {where} with {length} s of {kind}, {least:g} s are wanted"
+        tally.weigh(case.id, length - least, HALF_SECOND, told)
 
 
 def _weigh_order(tally: Tally, evidence: Evidence, case: Case) -> None:

@@ -66,7 +66,7 @@ def check_store(evidence: Evidence) -> Reading:
         for taking in story.takings:
             made = "" if taking.made_day is None else f" made on day {taking.made_day}"
             there = f"{taking.there_byte:.0f} byte of {taking.kind}{made} are on board"
-            told = f"{there} when {taking.byte:.0f} are to leave"
+            told = f"{there} when {taking.byte:.0f} are to come down"
             allowed = HALF_PERCENT * taking.byte + _ROUNDING_BYTE
             tally.weigh(taking.contact, taking.there_byte - taking.byte, allowed, told)
         for report in evidence.plan.data:
@@ -88,7 +88,8 @@ def store_story(evidence: Evidence, satellite: Satellite) -> StoreStory:
             at_s=float(max([slot.end_s for slot in case.slots("downlink")], default=case.contact.end_s)),
             kind=part.kind,
             made_day=part.made_day,
-            byte=part.byte * evidence.mission.success_fraction(case.station),
+            byte=part.byte,
+            chance=evidence.mission.success_fraction(case.station),
             in_week=case.in_week,
         )
         for case in evidence.cases

@@ -22,13 +22,19 @@ class Arrival:
 
 @dataclass(frozen=True, kw_only=True, slots=True)
 class Taking:
-    """Expected bytes of one class that one contact takes off the board, and what was there."""
+    """What one contact takes of one class.
+
+    Attributes:
+        byte: comes down if the contact works; `chance` of it leaves the board.
+        there_byte: what was on board when it was taken.
+    """
 
     contact: str
     at_s: float
     kind: str
     made_day: int | None
     byte: float
+    chance: float
     in_week: bool
     there_byte: float = math.nan
 
@@ -78,7 +84,7 @@ def replay(
     for taking in seen:
         if taking.in_week and taking.kind in week:
             sums = week[taking.kind]
-            down_byte = sums.down_byte + min(taking.byte, taking.there_byte)
+            down_byte = sums.down_byte + min(taking.byte * taking.chance, taking.there_byte)
             week[taking.kind] = replace(sums, down_byte=down_byte)
     return StoreStory(takings=tuple(seen), week=week)
 
@@ -134,7 +140,7 @@ class _Board:
         group = (taking.kind, taking.made_day)
         there = self.held.get(group, 0.0)
         if group in self.held:
-            self.held[group] = max(0.0, there - taking.byte)
+            self.held[group] = max(0.0, there - taking.byte * taking.chance)
         return replace(taking, there_byte=there)
 
     def sums(self) -> dict[str, Sums]:

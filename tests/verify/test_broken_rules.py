@@ -90,6 +90,11 @@ BREAKAGES: list[tuple[str, Rule, Change]] = [
         slots("QUA-02", lambda s: (replace(s[0], start_s=s[0].start_s + 1, end_s=s[0].end_s + 1), *s[1:])),
     ),
     (
+        "a slot out of the contact",
+        Rule.HALF_DUPLEX,
+        slots("QUA-02", lambda s: (*s[:-1], replace(s[-1], end_s=s[-1].end_s + 1))),
+    ),
+    (
         "a slot over the next",
         Rule.HALF_DUPLEX,
         slots("QUA-02", lambda s: (*s[:-1], replace(s[-1], start_s=s[-1].start_s - 2))),

@@ -242,3 +242,10 @@ def test_an_end_that_is_told_to_be_short_is_honest() -> None:
     verdict = check(late.mission, late.elements, late.plan)
     assert verdict.ok
     assert Rule.END_CHARGE not in {margin.rule for margin in verdict.margins}
+
+
+def test_what_takes_no_time_needs_no_slot() -> None:
+    week = planning(close_s=0.0)(good_week())
+    assert read(slots("QUA-02", lambda s: s[:-1])(week)) == set()
+    week = told(planning(acquire_s=0.0)(week).mission, slots("QUA-02", lambda s: s[1:])(week).plan)
+    assert read(week) == set()

@@ -16,8 +16,12 @@ def craft(size_byte: float, when_full: Literal["refuse", "overwrite_oldest"], *k
     return replace(SATELLITE, store=Store(partitions=(partition,), kinds=kinds))
 
 
-def take(at_s: float, kind: str, day: int | None, byte: float, *, in_week: bool = True) -> Taking:
-    return Taking(contact="QUA-01", at_s=at_s, kind=kind, made_day=day, byte=byte, in_week=in_week)
+def take(
+    at_s: float, kind: str, day: int | None, byte: float, *, in_week: bool = True, chance: float = 1.0
+) -> Taking:
+    return Taking(
+        contact="QUA-01", at_s=at_s, kind=kind, made_day=day, byte=byte, chance=chance, in_week=in_week
+    )
 
 
 STEADY = DataKind(name="steady", made_byte_s=1.0, on_board_byte=1000.0)
@@ -109,3 +113,12 @@ def test_the_week_s_sums_leave_the_look_ahead_out() -> None:
     assert story.week["steady"].made_byte == pytest.approx(WEEK_S)
     assert story.week["steady"].down_byte == pytest.approx(100.0)
     assert story.takings[1].there_byte == pytest.approx(1000.0 + end_s - 100.0)
+
+
+def test_the_expected_share_leaves_and_the_rest_stays() -> None:
+    """1500 there; 1000 asked with a chance of 0.8 leave 700."""
+    still = replace(STEADY, made_byte_s=0.0, on_board_byte=1500.0)
+    takings = (take(10.0, "steady", None, 1000.0, chance=0.8), take(20.0, "steady", None, 0.0))
+    story = replay(craft(1e9, "refuse", still), WEEK_S, (), takings)
+    assert [taking.there_byte for taking in story.takings] == [1500.0, 700.0]
+    assert story.week["steady"].down_byte == pytest.approx(800.0)
