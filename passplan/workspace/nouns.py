@@ -8,7 +8,7 @@ ISO texts, lists may become tuples, and nothing is converted silently (no "12" f
 import difflib
 import json
 from collections.abc import Iterator
-from datetime import date, datetime
+from datetime import date, datetime, time
 from typing import Any, TypeVar
 
 from pydantic import TypeAdapter, ValidationError
@@ -16,7 +16,7 @@ from pydantic import TypeAdapter, ValidationError
 from passplan.domain.errors import FieldError, Mistake
 from passplan.workspace.documents import MOST_TEXT, Data, Document, Place
 from passplan.workspace.mend import hidden_by, holds, inside, mended, noun_of
-from passplan.workspace.wording import Hint, expected, hints_of
+from passplan.workspace.wording import Hint, bare_hint, expected, hints_of
 
 Noun = TypeVar("Noun")
 
@@ -38,7 +38,7 @@ def read_noun(
         document: where it stands, for mistakes.
         at: place of the table in its document.
     """
-    faults = _text_faults(data)
+    faults = _raw_faults(data, noun)
     made: Noun | None = None
     try:
         made = _adapter(noun).validate_json(_json(data), strict=True)
@@ -123,17 +123,23 @@ def _told_by_nouns(error: ValidationError) -> Iterator[tuple[Place, str, object,
                 yield item["loc"], name, value, allowed
 
 
-def _text_faults(data: Data, at: Place = ()) -> Faults:
-    """Return texts and names of keys that would upset a terminal or a calendar, and impossible years."""
+def _raw_faults(data: Data, hint: Hint, at: Place = ()) -> Faults:
+    """Return what only the data as written can tell.
+
+    That is: texts and keys that would upset a terminal or a calendar, impossible years,
+    and bare dates where a text belongs, which JSON would pass on as texts.
+    """
     faults: Faults = {}
     match data:
         case dict() | list():
             for key, value in data.items() if isinstance(data, dict) else enumerate(data):
-                faults |= _text_faults(value, (*at, key))
+                faults |= _raw_faults(value, inside(hint, key), (*at, key))
                 if isinstance(key, str) and (told := _unfit(key)):
                     faults[*at, key] = ("", f"the key itself: {told}")
         case str() if told := _unfit(data):
             faults[at] = (data, told)
+        case date() | time() if bare_hint(hint)[0] is str:
+            faults[at] = (data, "expected " + expected(hint))
         case date() if not _FIRST_YEAR <= data.year <= _LAST_YEAR:
             faults[at] = (data, f"a year from {_FIRST_YEAR} to {_LAST_YEAR}")
     return faults

@@ -144,6 +144,12 @@ SLIPS = {
         "deadline_utc = 1026-12-08T12:00:00Z",
         "commands.toml: command[1].deadline_utc (line 21): '1026-12-08T12:00:00Z': a year from 1990 to 2200",
     ),
+    "a date for a text": (
+        COM,
+        'name = "greeting"',
+        "name = 2026-12-07",
+        "commands.toml: command[24].name (line 196): '2026-12-07': expected a text in quotes",
+    ),
     "local hours with a zone": (
         OPS,
         "begin = 17:30:00, end = 23:00:00",
