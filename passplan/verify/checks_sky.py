@@ -1,7 +1,5 @@
 """Checks of the sky over each contact: height, guard time, the antenna, the age of the elements."""
 
-import math
-
 import numpy as np
 
 from passplan.domain.constants import DAY_S
@@ -51,8 +49,7 @@ def _compare_pass(tally: Tally, evidence: Evidence, case: Case) -> None:
         if not on_line and not abs(claimed_s - found_s) <= HALF_SECOND:
             told = f"the plan puts {name} at {evidence.clock(claimed_s)}"
             tally.fail(case.id, f"{told}, it is at {evidence.clock(found_s)}")
-    seen = view.seconds(math.ceil(aos_s), math.floor(los_s) + 1)
-    highest = float(view.elevation_deg[seen].max())
+    highest = view.highest_deg(aos_s, los_s)
     told = f"the plan promises {contact.max_elevation_deg:.1f} deg at the highest, it is {highest:.1f} deg"
     tally.compare(case.id, abs(contact.max_elevation_deg - highest), TWENTIETH_DEG, told)
 

@@ -2,6 +2,7 @@
 
 import math
 from collections.abc import Iterator
+from itertools import product
 
 import numpy as np
 
@@ -9,6 +10,8 @@ from passplan.domain.passes import Floats
 from passplan.domain.station import Rotator, Station
 from passplan.verify.skyfield_view import View
 from passplan.verify.tally import TWENTIETH_DEG
+
+_NOTHING_DEG = 1e-6
 
 
 def half_beam_deg(station: Station) -> float:
@@ -44,6 +47,8 @@ def worst_lag(station: Station, view: View, begin_s: int, end_s: int) -> tuple[f
         lag = _angle_deg(stands_azimuth, stands_elevation, azimuth, elevation)[watched]
         worst = int(np.argmax(lag))
         best = min(best, (float(lag[worst]), begin_s + worst))
+        if best[0] < _NOTHING_DEG:
+            break
     return best
 
 
@@ -59,8 +64,9 @@ def _ways(rotator: Rotator, azimuth: Floats, elevation: Floats) -> Iterator[tupl
         half_turn = -180.0 if upright[-1] >= upright[0] else 180.0
         late = np.arange(len(upright)) > int(np.argmax(elevation))
         bodies.append((upright + half_turn * late, np.where(late, 180.0 - elevation, elevation)))
-    low, high = rotator.azimuth_from_deg - TWENTIETH_DEG, rotator.azimuth_to_deg + TWENTIETH_DEG
-    for body_azimuth, body_elevation in bodies:
+    # Where the axis meets its stop a little sooner or later, it goes back a second sooner or later.
+    for slack, (body_azimuth, body_elevation) in product((0.0, TWENTIETH_DEG, -TWENTIETH_DEG), bodies):
+        low, high = rotator.azimuth_from_deg - slack, rotator.azimuth_to_deg + slack
         start = float(body_azimuth[0])
         for turn in range(math.ceil((low - start) / 360.0), math.floor((high - start) / 360.0) + 1):
             yield _in_travel(body_azimuth + 360.0 * turn, low, high), body_elevation.tolist()

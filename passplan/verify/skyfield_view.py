@@ -20,6 +20,7 @@ _SGP4_EPOCH_JD = 2433281.5  # SGP4 counts days from 1949 December 31, 00:00 UT
 _STEP_S = 240
 _FARTHEST_S = int(DAY_S)
 _WGS72 = 0
+_FINE_STEPS = 201
 
 
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
@@ -44,6 +45,23 @@ class View:
         """Return the height over the horizon at a moment, that of the nearest end outside the view."""
         height = self.elevation_deg - self.horizon_deg
         return float(np.interp(second - self.start_s, np.arange(len(height)), height))
+
+    def highest_deg(self, begin_s: float, end_s: float) -> float:
+        """Return the highest elevation of [begin_s, end_s], between whole seconds too.
+
+        Places a second apart are joined by straight lines, which lie 0.002 deg amiss at
+        most; elevations joined so would be 0.3 deg amiss near the zenith.
+        """
+        part = self.seconds(math.floor(begin_s), math.ceil(end_s) + 1)
+        top = part.start + int(np.argmax(self.elevation_deg[part]))
+        near = slice(max(part.start, top - 1), min(part.stop, top + 2))
+        azimuth, elevation = np.radians(self.azimuth_deg[near]), np.radians(self.elevation_deg[near])
+        level_km = self.range_km[near] * np.cos(elevation)
+        here = self.start_s + np.arange(near.start, near.stop, dtype=np.float64)
+        fine = np.clip(np.linspace(here[0], here[-1], _FINE_STEPS), begin_s, end_s)
+        north_km, east_km = (np.interp(fine, here, level_km * turn(azimuth)) for turn in (np.cos, np.sin))
+        up_km = np.interp(fine, here, self.range_km[near] * np.sin(elevation))
+        return float(np.degrees(np.arctan2(up_km, np.hypot(north_km, east_km))).max())
 
     def seconds(self, begin_s: int, end_s: int) -> slice:
         """Return the slice of whole seconds begin_s <= t < end_s, at least one and only what is seen."""

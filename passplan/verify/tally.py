@@ -1,5 +1,6 @@
 """How a check gathers what it finds: broken rules, and the tightest place where none is broken."""
 
+import math
 from dataclasses import dataclass
 
 from passplan.domain.rules import Rule
@@ -44,23 +45,24 @@ class Tally:
             sentence: what is wrong, used when it is.
         """
         if not slack >= -allowed:
-            shortfall = -slack if slack == slack else 0.0  # noqa: PLR0124 - only NaN differs from itself
-            self._findings.append(
-                Finding(rule=self.rule, where=where, sentence=sentence, shortfall=shortfall, unit=self.unit)
-            )
+            self._break(where, sentence, -slack)
         elif self._margin is None or slack < self._margin.value:
             self._margin = Margin(rule=self.rule, where=where, value=max(0.0, slack), unit=self.unit)
 
     def compare(self, where: str, off: float, allowed: float, sentence: str) -> None:
         """Take down a figure of the plan that is off by more than is allowed; it gives no margin."""
         if not off <= allowed:
-            self._findings.append(
-                Finding(rule=self.rule, where=where, sentence=sentence, shortfall=off, unit=self.unit)
-            )
+            self._break(where, sentence, off)
 
     def fail(self, where: str, sentence: str) -> None:
         """Take down a broken rule that has no figure."""
         self._findings.append(Finding(rule=self.rule, where=where, sentence=sentence))
+
+    def _break(self, where: str, sentence: str, shortfall: float) -> None:
+        figure = 0.0 if math.isnan(shortfall) else shortfall
+        self._findings.append(
+            Finding(rule=self.rule, where=where, sentence=sentence, shortfall=figure, unit=self.unit)
+        )
 
     @property
     def reading(self) -> Reading:

@@ -193,6 +193,7 @@ def test_a_slack_that_is_no_number_is_broken() -> None:
     tally.weigh("here", float("nan"), 0.05, "nowhere to be seen")
     tally.compare("there", float("nan"), 0.05, "not comparable")
     assert [finding.where for finding in tally.reading.findings] == ["here", "there"]
+    assert [finding.shortfall for finding in tally.reading.findings] == [0.0, 0.0]
     assert tally.reading.margin is None
 
 

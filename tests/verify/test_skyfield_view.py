@@ -110,6 +110,27 @@ def test_aos_and_los_are_those_of_skyfield_s_own_search() -> None:
             )
 
 
+def test_the_highest_point_is_found_between_seconds() -> None:
+    """Skyfield's search gives culminations to half a second; near the zenith that is tenths of a degree."""
+    body, station = orbit(ELEMENTS), replace(WEST, mask=())
+    steep = max(flybys("QUA"), key=lambda fly: fly.highest_deg)
+    middle = round((steep.aos_s + steep.los_s) / 2.0)
+    seen = view(body, station, HORIZON, middle, middle)
+    fine = load.timescale(builtin=True).from_datetimes(
+        [HORIZON.utc(middle + step / 50.0) for step in range(-1500, 1500)]
+    )
+    highest = float((body - PLACE).at(fine).altaz()[0].degrees.max())
+    assert seen.highest_deg(seen.aos_s, seen.los_s) == pytest.approx(highest, abs=0.01)
+    assert seen.highest_deg(seen.aos_s, seen.aos_s + 20.5) == pytest.approx(
+        float(
+            np.interp(
+                20.5 + seen.aos_s - seen.start_s, np.arange(len(seen.elevation_deg)), seen.elevation_deg
+            )
+        ),
+        abs=1e-3,
+    )
+
+
 def test_the_horizon_is_the_mask_or_what_one_may_receive_at() -> None:
     station = replace(WEST, mask=((10.0, 20.0), (350.0, 0.0)), least_receive_elevation_deg=5.0)
     found = horizon_deg(station, np.array([0.0, 10.0, 100.0, 350.0, 359.0]))
