@@ -8,17 +8,19 @@ from numpy.typing import NDArray
 from sgp4.api import WGS72, Satrec
 from skyfield.api import load
 from skyfield.sgp4lib import theta_GMST1982
+from skyfield.timelib import Timescale
 
 from passplan.domain.constants import EARTH_FLATTENING, EARTH_MU_KM3_S2, EARTH_RADIUS_KM
 from passplan.domain.elements import ElementSet
 from passplan.domain.moments import Horizon
 from passplan.domain.station import Rotator, Station
+from passplan.sky.ut1 import ut1_minus_utc_s
 
 Floats = NDArray[np.float64]
 Mask = tuple[tuple[float, float], ...]
 
 WEEK = Horizon(week="2026-W50", lookahead_h=0.0)
-SCALE = load.timescale()
+SCALE: Timescale = load.timescale()
 
 
 def element_set(
@@ -61,7 +63,8 @@ ORBITS: dict[str, ElementSet] = {
     "polar 700 km": element_set(90.0, *between(700.0, 702.0), node_deg=200.0),
     "equatorial 600 km": element_set(0.0, *between(600.0, 610.0)),
     "low inclination 550 km": element_set(8.0, *between(545.0, 555.0), anomaly_deg=200.0),
-    "250 km, decays in the week": element_set(51.6, *between(248.0, 252.0), bstar=8e-4),
+    "250 km": element_set(51.6, *between(248.0, 252.0), bstar=8e-4),
+    "250 km, decays on Thursday": element_set(51.6, *between(248.0, 252.0), bstar=3e-3),
     "retrograde 1200 km": element_set(140.0, *between(1200.0, 1210.0), node_deg=300.0),
     "12 h circular": element_set(55.0, 2.0056, 0.01, bstar=0.0),
     "12 h eccentric": element_set(63.4, 2.0058, 0.72, perigee_deg=270.0, bstar=0.0),
@@ -177,3 +180,12 @@ def excess_deg(one: ElementSet, place: Station, seconds: Floats) -> Floats:
     position_km, errors = itrs_km(one, seconds)
     elevation_deg, azimuth_deg = horizontal_deg(place, position_km)
     return np.where(errors == 0, elevation_deg - line_deg(place, azimuth_deg), -np.inf)
+
+
+def our_scale() -> Timescale:
+    """Return Skyfield's time scale with UT1 from our table, so that geometry alone is compared."""
+    scale = Timescale.__new__(Timescale)
+    scale.__dict__.update(SCALE.__dict__)
+    shift_s = 32.184 + 37.0  # TT - UTC since 2017
+    scale.delta_t_function = lambda tt: shift_s - ut1_minus_utc_s(np.asarray(tt) - shift_s / 86400.0)
+    return scale
