@@ -1,0 +1,237 @@
+"""The chain of solves: each step keeps the earlier ones within their gives."""
+
+import math
+import time
+from collections.abc import Callable
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from passplan.domain.plan import StepReport
+from passplan.domain.problem import Problem
+from passplan.schedule.model import Answer, Model, Solver, Values
+from passplan.schedule.rows_charge import charge_rows
+from passplan.schedule.rows_contacts import contact_rows
+from passplan.schedule.rows_people import people_rows
+from passplan.schedule.rows_requests import request_rows
+from passplan.schedule.rows_store import store_rows
+from passplan.schedule.steps import (
+    Step,
+    burden_steps,
+    contacts_step,
+    fairness_rows,
+    first_must,
+    must_steps,
+    offered_min,
+    people_step,
+    urgent_step,
+    worth_step,
+)
+from passplan.schedule.variables import Variables, variables
+
+Tell = Callable[[str], None]
+_GAP = 1e-4
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Solved:
+    """The end of the chain.
+
+    Attributes:
+        names: columns of the model.
+        values: the plan's, 0/1 whole.
+        best: values of the worth step, nothing given.
+        steps: reports in order, `kept` filled in.
+        seconds: solver time by step name.
+    """
+
+    names: Variables
+    values: Values
+    best: Values
+    steps: tuple[StepReport, ...]
+    seconds: dict[str, float]
+
+
+@dataclass(slots=True, eq=False)
+class Chain:
+    """A model that grows a row with each step held."""
+
+    problem: Problem
+    model: Model
+    names: Variables
+    ends: float
+    solver: Solver
+    tell: Tell
+    values: Values | None = None
+    done: list[tuple[Step, float, float, bool]] = field(default_factory=list)
+    seconds: dict[str, float] = field(default_factory=dict)
+
+    def take(self, step: Step, *, report: bool = True, share: float = 1.0) -> bool:
+        """Solve one step, keep its value for the later ones, and return whether a solution was found.
+
+        Args:
+            step: what to optimise.
+            report: list it among the plan's steps.
+            share: of the time left, the most this step may use.
+        """
+        left = max(0.0, self.ends - time.perf_counter())
+        answer = self.model.solve(
+            step.objective,
+            maximise=step.maximise,
+            seconds=left * share,
+            solver=self.solver,
+            gap=_GAP / 2.0,
+            whole=step.whole,
+            hint=self.values,
+        )
+        self.seconds[step.name] = self.seconds.get(step.name, 0.0) + answer.seconds
+        self.tell(f"{step.name}: {answer.value:.6g} (bound {answer.bound:.6g}) {answer.seconds:.2f} s {answer.status}")
+        if answer.found:
+            self.values = answer.values
+            value = step.value(answer.values)
+        elif self.values is not None and answer.status == "unknown":
+            value = step.value(self.values)
+        else:
+            return False
+        bound = _bound(step, answer, value)
+        if report:
+            proven = abs(bound - value) <= _GAP * max(1.0, abs(value))
+            self.done.append((step, value, bound, proven))
+        step.hold(self.model, value, slack=max(1e-6, 1e-7 * abs(value)))
+        return True
+
+
+def _bound(step: Step, answer: Answer, value: float) -> float:
+    """Return the bound a solve proved; of a count, the whole number that it proves."""
+    bound = answer.bound if math.isfinite(answer.bound) else (math.inf if step.maximise else 0.0)
+    if step.whole:
+        bound = math.floor(bound + 1e-4) if step.maximise else math.ceil(bound - 1e-4)
+    return max(bound, value) if step.maximise else min(bound, value)
+
+
+def build(problem: Problem) -> tuple[Model, Variables]:
+    """Return the model of a problem with every row but those of the steps."""
+    model = Model()
+    names = variables(problem, model)
+    contact_rows(problem, model, names)
+    request_rows(problem, model, names)
+    people_rows(problem, model, names)
+    charge_rows(problem, model, names)
+    store_rows(problem, model, names)
+    return model, names
+
+
+def solve(
+    problem: Problem, *, time_limit_s: float = 300.0, solver: Solver = "highs", tell: Tell = lambda _: None
+) -> Solved:
+    """Return the best plan of a problem, step by step.
+
+    Args:
+        problem: what to solve.
+        time_limit_s: for the whole chain; the best plan so far is kept when it strikes.
+        solver: which.
+        tell: called with a line after each solve.
+    """
+    model, names = build(problem)
+    chain = Chain(problem, model, names, time.perf_counter() + time_limit_s, solver, tell)
+    _before_worth(chain)
+    chain.take(worth_step(problem, names), share=0.6)
+    best = chain.values
+    for step in burden_steps(problem, names):
+        chain.take(step, share=0.7)
+    again = worth_step(problem, names)
+    chain.take(Step("worth again", "kB", again.objective, maximise=True), share=0.7)
+    chain.take(contacts_step(problem, names), report=False, share=0.7)
+    _share_out(chain)
+    values = _polish(chain)
+    reports = tuple(
+        StepReport(
+            name=step.name,
+            unit=step.unit,
+            value=value,
+            bound=bound,
+            give=step.give(value),
+            kept=step.value(values),
+            proven=proven,
+        )
+        for step, value, bound, proven in chain.done
+    )
+    return Solved(names, values, best, reports, chain.seconds)
+
+
+def _before_worth(chain: Chain) -> None:
+    """Settle musts, end charge and urgent musts.
+
+    Mostly all of them can be had in full, so that is tried first: a solution with every
+    must and no charge missing proves both steps at once.
+    """
+    problem, names = chain.problem, chain.names
+    steps = must_steps(problem, names)
+    urgent = urgent_step(problem, names)
+    hopeful = chain.model.copy()
+    for step in steps:
+        step.hold(hopeful, step.ideal or 0.0)
+    trial = Chain(problem, hopeful, names, chain.ends, chain.solver, chain.tell)
+    if trial.take(urgent or Step("everything wanted first", "", {}, maximise=False), report=urgent is not None):
+        chain.model, chain.values = trial.model, trial.values
+        chain.seconds |= trial.seconds
+        chain.done = [(step, step.ideal or 0.0, step.ideal or 0.0, True) for step in steps] + trial.done
+        return
+    for step in steps:
+        chain.take(step)
+        if step.whole and chain.values is not None and step.value(chain.values) < (step.ideal or 0.0) - 0.5:
+            chain.take(first_must(problem, names), report=False)
+    if urgent:
+        chain.take(urgent)
+
+
+def _share_out(chain: Chain) -> None:
+    """With the contacts fixed, share the duties fairly, twice, then settle who among equals."""
+    problem, names, values = chain.problem, chain.names, chain.values
+    held = [column for options in names.x for column in options]
+    held += [*names.up_left.values(), *names.up_right.values()]
+    held += [column for starts in names.run for column in starts]
+    for column in held:
+        chain.model.fix(column, round(float(values[column])))
+    step = fairness_rows(problem, chain.model, names, {})
+    if chain.take(step):
+        largest = chain.done[-1][1]
+        fixed = _at_most(chain, largest)
+        more = fairness_rows(problem, chain.model, names, fixed)
+        chain.take(more, report=False)
+    chain.take(people_step(problem, names), report=False)
+
+
+def _at_most(chain: Chain, largest: float) -> dict[int, float]:
+    """Return the operators whose share is the largest, with it."""
+    problem, names, total = chain.problem, chain.names, offered_min(chain.problem)
+    loads = [0.0] * len(problem.operators)
+    for index, offered in enumerate(problem.passes):
+        for duty in offered.duties:
+            if duty.operator in names.y[index]:
+                loads[duty.operator] += duty.load_min * float(chain.values[names.y[index][duty.operator]])
+    return {
+        operator: largest
+        for operator, load in enumerate(loads)
+        if total[operator] and load >= (largest - 1e-6) * total[operator]
+    }
+
+
+def _polish(chain: Chain) -> Values:
+    """With every 0/1 fixed and whole, take most worth, then the downlink nearest to the peaks."""
+    problem, names = chain.problem, chain.names
+    model = chain.model.copy()
+    for column in names.integers():
+        model.fix(column, round(float(chain.values[column])))
+    worth = worth_step(problem, names)
+    answer = model.solve(worth.objective, maximise=True, seconds=30.0, relaxed=True, solver=chain.solver)
+    if not answer.found:
+        return chain.values
+    Step("worth", "kB", worth.objective, maximise=True).hold(model, answer.value, slack=1e-6 * abs(answer.value) + 1e-6)
+    far = {
+        column: 1.0 + abs((part.start_s + part.end_s) / 2.0 - offered.peak_s) / 100.0
+        for index, offered in enumerate(problem.passes)
+        for part, column in zip(offered.slices, names.t[index], strict=True)
+    }
+    compact = model.solve(far, maximise=False, seconds=30.0, relaxed=True, solver=chain.solver)
+    return compact.values if compact.found else answer.values
