@@ -13,12 +13,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from passplan.sky.horizon_lines import HorizonLines
-from passplan.sky.nodes import expanded, middles, polynomials, stencils
-from passplan.sky.propagate import Arc
+from passplan.sky.nodes import expanded
 from passplan.sky.ragged import counted
 from passplan.sky.roots import roots, secant
 from passplan.sky.search import Stretches, holders
-from passplan.sky.sites import Sites
+from passplan.sky.views import View
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -29,26 +28,6 @@ _PIECES = 8  # samples a step, to begin with
 _NEAR_TOP = 2.0 ** -np.arange(3.0, 10.0)  # steps from a culmination, where the azimuth swings fastest
 _TOLERANCE_S = 1e-3
 _TINY_KM = 1e-9
-
-
-@dataclass(frozen=True, kw_only=True, slots=True, eq=False)
-class _View:
-    """East, north and up (km) of one satellite at s stations, as rows of shape (3 s, n)."""
-
-    rows: Floats
-    lines: HorizonLines
-    tolerance: float
-
-    def curves(self, row: Ints, place: Floats) -> tuple[Floats, Floats]:
-        """Return polynomials of east, north, up (POINTS, 3, m) around places, and their middles."""
-        first = stencils(np.floor(place).astype(np.intp), self.rows.shape[1])
-        return polynomials(self.rows, 3 * row + np.arange(3)[:, np.newaxis], first), middles(first)
-
-    def terms(self, row: Ints, place: Floats) -> Terms:
-        """Return east, north and up at places, with their derivatives."""
-        curves, middle = self.curves(row, place)
-        value, slope, half_bend = expanded(curves, place - middle, 2)
-        return value, slope, half_bend
 
 
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
@@ -74,25 +53,22 @@ class _Knots:
         return same
 
 
-def cut(arc: Arc, sites: Sites, lines: HorizonLines, seen: Stretches) -> Stretches:
+def cut(view: View, lines: HorizonLines, seen: Stretches) -> Stretches:
     """Return `seen` cut to what stands above the horizon lines.
 
     Args:
-        arc: the satellite.
-        sites: s stations.
+        view: one satellite over s stations.
         lines: their horizon lines.
         seen: stretches above the lowest point of each line.
     """
     jagged = lines.jagged[seen.row]
     if not jagged.any():
         return seen
-    axes = np.stack((sites.east, sites.north, sites.up), axis=1).reshape(-1, 3)
-    offsets = np.einsum("sij,sj->si", axes.reshape(-1, 3, 3), sites.position_km).reshape(-1, 1)
-    view = _View(rows=axes @ arc.itrs_km - offsets, lines=lines, tolerance=_TOLERANCE_S / arc.step_s)
     knots = _sampled(seen, np.flatnonzero(jagged))
-    for further in (_azimuth_turns, _corners, _gap_turns):
-        knots = knots.joined(*further(view, knots))
-    row, rise, fall = _above(view, knots)
+    knots = knots.joined(*_azimuth_turns(view, knots))
+    knots = knots.joined(*_corners(view, lines, knots))
+    knots = knots.joined(*_gap_turns(view, lines, knots))
+    row, rise, fall = _above(view, lines, knots)
     row = np.concatenate((seen.row[~jagged], row))
     rise = np.concatenate((seen.rise[~jagged], rise))
     fall = np.concatenate((seen.fall[~jagged], fall))
@@ -117,16 +93,23 @@ def _sampled(seen: Stretches, which: Ints) -> _Knots:
     return _Knots(owner=owner[order], row=seen.row[which][owner[order]], place=place[order])
 
 
-def _azimuth_turns(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
+def _terms(view: View, row: Ints, place: Floats) -> Terms:
+    """Return east, north and up at places, with their derivatives."""
+    curves, middle = view.curves(row, np.floor(place).astype(np.intp))
+    value, slope, half_bend = expanded(curves, place - middle, 2)
+    return value, slope, half_bend
+
+
+def _azimuth_turns(view: View, knots: _Knots) -> tuple[Ints, Floats]:
     """Return where the azimuth turns back: piece and place."""
-    swing, _ = _swing(view.terms(knots.row, knots.place))
+    swing, _ = _swing(_terms(view, knots.row, knots.place))
     low = np.flatnonzero(knots.linked & ((swing[:-1] > 0.0) != (swing[1:] > 0.0)))
     return low, _refined(view, knots, low, (swing[low], swing[low + 1]), lambda terms, _: _swing(terms))
 
 
-def _corners(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
+def _corners(view: View, lines: HorizonLines, knots: _Knots) -> tuple[Ints, Floats]:
     """Return where the azimuth meets a corner of the line: piece and place."""
-    terms = view.terms(knots.row, knots.place)
+    terms = _terms(view, knots.row, knots.place)
     (east, north, _), (swing, _) = terms[0], _swing(terms)
     azimuth_deg = np.degrees(np.arctan2(east, north)) % 360.0
     piece = np.flatnonzero(knots.linked)
@@ -134,7 +117,7 @@ def _corners(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
     clockwise = swing[piece] + swing[piece + 1] > 0.0
     low_deg = np.where(clockwise, start, start - (start - stop) % 360.0)
     high_deg = np.where(clockwise, start + (stop - start) % 360.0, start)
-    owner, corner_deg = view.lines.corners_between(knots.row[piece], low_deg, high_deg)
+    owner, corner_deg = lines.corners_between(knots.row[piece], low_deg, high_deg)
     low = piece[owner]
     across, along = np.cos(np.radians(corner_deg)), np.sin(np.radians(corner_deg))
     aside = [east[at] * across - north[at] * along for at in (low, low + 1)]
@@ -148,11 +131,11 @@ def _corners(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
     return low[real], _refined(view, knots, low[real], (aside[0][real], aside[1][real]), beside)
 
 
-def _gap_turns(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
+def _gap_turns(view: View, lines: HorizonLines, knots: _Knots) -> tuple[Ints, Floats]:
     """Return where elevation less line turns: piece and place."""
     piece = np.flatnonzero(knots.linked)
-    line = _Line.of(view, knots, piece)
-    value, slope, half_bend = view.terms(knots.row, knots.place)
+    line = _Line.of(view, lines, knots, piece)
+    value, slope, half_bend = _terms(view, knots.row, knots.place)
     start, stop = (line.gap((value[:, at], slope[:, at], half_bend[:, at]))[1] for at in (piece, piece + 1))
     turns = (start > 0.0) != (stop > 0.0)
     low, line = piece[turns], line.part(turns)
@@ -163,15 +146,15 @@ def _gap_turns(view: _View, knots: _Knots) -> tuple[Ints, Floats]:
     return low, _refined(view, knots, low, (start[turns], stop[turns]), rate)
 
 
-def _above(view: _View, knots: _Knots) -> tuple[Ints, Floats, Floats]:
+def _above(view: View, lines: HorizonLines, knots: _Knots) -> tuple[Ints, Floats, Floats]:
     """Return row, rise and fall of what stands above the lines, in order of owner."""
-    (east, north, up), _, _ = view.terms(knots.row, knots.place)
+    (east, north, up), _, _ = _terms(view, knots.row, knots.place)
     azimuth_deg = np.degrees(np.arctan2(east, north)) % 360.0
     elevation_deg = np.degrees(np.arctan2(up, np.hypot(east, north)))
-    excess = elevation_deg - view.lines.elevation(knots.row, azimuth_deg)
+    excess = elevation_deg - lines.elevation(knots.row, azimuth_deg)
     above, linked = excess > 0.0, knots.linked
     low = np.flatnonzero(linked & (above[:-1] != above[1:]))
-    line = _Line.of(view, knots, low)
+    line = _Line.of(view, lines, knots, low)
 
     def gap(terms: Terms, which: Ints | slice) -> tuple[Floats, Floats]:
         return line.part(which).gap(terms)[:2]
@@ -190,7 +173,7 @@ def _above(view: _View, knots: _Knots) -> tuple[Ints, Floats, Floats]:
 
 
 def _refined(
-    view: _View,
+    view: View,
     knots: _Knots,
     low: Ints,
     at_ends: tuple[Floats, Floats],
@@ -198,13 +181,13 @@ def _refined(
 ) -> Floats:
     """Return the places in the pieces after knots `low` where a function of the motion changes sign."""
     start, stop = knots.place[low], knots.place[low + 1]
-    curves, middle = view.curves(knots.row[low], start)
+    curves, middle = view.curves(knots.row[low], np.floor(start).astype(np.intp))
 
     def at(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
         value, slope, half_bend = expanded(curves[..., which], place, 2)
         return function((value, slope, half_bend), which)
 
-    return middle + roots(at, secant(start - middle, stop - middle, *at_ends), view.tolerance)
+    return middle + roots(at, secant(start - middle, stop - middle, *at_ends), _TOLERANCE_S / view.step_s)
 
 
 def _swing(terms: Terms) -> tuple[Floats, Floats]:
@@ -222,14 +205,14 @@ class _Line:
     slope: Floats
 
     @classmethod
-    def of(cls, view: _View, knots: _Knots, piece: Ints) -> "_Line":
+    def of(cls, view: View, lines: HorizonLines, knots: _Knots, piece: Ints) -> "_Line":
         """Return the lines in the pieces that follow knots `piece`."""
         row = knots.row[piece]
         middle = 0.5 * (knots.place[piece] + knots.place[piece + 1])
-        (east, north, _), _, _ = view.terms(row, middle)
+        (east, north, _), _, _ = _terms(view, row, middle)
         azimuth_deg = np.degrees(np.arctan2(east, north)) % 360.0
-        elevation_deg = view.lines.elevation(row, azimuth_deg)
-        slope = view.lines.slope_at(row, azimuth_deg)
+        elevation_deg = lines.elevation(row, azimuth_deg)
+        slope = lines.slope_at(row, azimuth_deg)
         return cls(azimuth_deg=azimuth_deg, elevation_deg=elevation_deg, slope=slope)
 
     def part(self, which: Bools | Ints | slice) -> "_Line":

@@ -14,14 +14,15 @@ from passplan.sky.looks import looks, state
 from passplan.sky.mask_cuts import cut
 from passplan.sky.nodes import POINTS
 from passplan.sky.propagate import Arc, arc, grids, step_s
-from passplan.sky.search import Stretches, holders, stretches
+from passplan.sky.search import Stretches, holders, least_height_km, stretches
 from passplan.sky.sites import Sites, sites
+from passplan.sky.views import View
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 Bools = NDArray[np.bool_]
 
-_BLOCK = 32  # stations searched at once, so that the work stays in the processor's cache
+_BLOCK = 32
 _NO_INDEX, _NO_PLACE = np.zeros(0, dtype=np.intp), np.zeros(0)
 _NOTHING = Stretches(
     row=_NO_INDEX, rise=_NO_PLACE, fall=_NO_PLACE, peak_row=_NO_INDEX, peak=_NO_PLACE, peak_sine=_NO_PLACE
@@ -50,6 +51,37 @@ class Found:
     open_end: Bools
 
 
+@dataclass(frozen=True, kw_only=True, slots=True, eq=False)
+class Block:
+    """Some stations, from number `start` on."""
+
+    start: int
+    places: Sites
+    lines: HorizonLines
+
+
+@dataclass(frozen=True, kw_only=True, slots=True, eq=False)
+class Ground:
+    """All stations, and the same in blocks small enough for the cache of a processor."""
+
+    places: Sites
+    blocks: tuple[Block, ...]
+
+    @classmethod
+    def of(cls, stations: Sequence[Station]) -> "Ground":
+        """Return places and horizon lines of stations."""
+        places = sites(stations)
+        blocks = [
+            Block(
+                start=start,
+                places=places.part(slice(start, start + _BLOCK)),
+                lines=horizon_lines(stations[start : start + _BLOCK]),
+            )
+            for start in range(0, len(stations), _BLOCK)
+        ]
+        return cls(places=places, blocks=tuple(blocks))
+
+
 def passes_of(
     elements: Mapping[str, ElementSet], stations: Sequence[Station], horizon: Horizon
 ) -> Iterator[Found]:
@@ -60,33 +92,33 @@ def passes_of(
         stations: whose `horizon` lines count.
         horizon: the week.
     """
-    places, lines = sites(stations), horizon_lines(stations)
+    ground = Ground.of(stations)
     grid = grids(horizon, 0.0)
     for name in sorted(elements):
-        flown = arc(elements[name], grid(step_s(elements[name])))
-        yield found(name, flown, places, lines, horizon)
+        yield found(name, arc(elements[name], grid(step_s(elements[name]))), ground, horizon)
 
 
-def found(name: str, flown: Arc, places: Sites, lines: HorizonLines, horizon: Horizon) -> Found:
+def found(name: str, flown: Arc, ground: Ground, horizon: Horizon) -> Found:
     """Return the passes of one satellite whose arc is known."""
     end_s = horizon.end_s if flown.end_s is None else min(horizon.end_s, flown.end_s)
     first, last = flown.node_range(0.0, end_s)
-    if flown.nodes < POINTS or last <= first:
-        return _culminated(name, flown, places, _NOTHING, end_s)
-    level_sine = np.sin(np.radians(lines.lowest_deg))
-    parts = []
-    for start in range(0, len(level_sine), _BLOCK):
-        block = slice(start, start + _BLOCK)
-        seen = stretches(flown, places.part(block), level_sine[block], first, last)
-        parts.append(replace(seen, row=seen.row + start, peak_row=seen.peak_row + start))
-    seen = cut(flown, places, lines, _chained(parts))
-    return _culminated(name, flown, places, seen, end_s)
+    parts = [_NOTHING]
+    if flown.nodes >= POINTS and first < last:
+        parts += [_seen(flown, block, first, last) for block in ground.blocks]
+    return _culminated(name, flown, ground.places, _chained(parts), end_s)
+
+
+def _seen(flown: Arc, block: Block, first: int, last: int) -> Stretches:
+    """Return the stretches above the horizon lines of one block of stations."""
+    view = View.of(flown, block.places)
+    level_sine = np.sin(np.radians(block.lines.lowest_deg))
+    least_km = least_height_km(flown, block.places, level_sine)
+    seen = cut(view, block.lines, stretches(view, least_km, level_sine, first, last))
+    return replace(seen, row=seen.row + block.start, peak_row=seen.peak_row + block.start)
 
 
 def _chained(parts: Sequence[Stretches]) -> Stretches:
     """Return the stretches of several blocks of stations as one."""
-    if len(parts) == 1:
-        return parts[0]
     names = [field.name for field in fields(Stretches)]
     return Stretches(**{name: np.concatenate([getattr(part, name) for part in parts]) for name in names})
 

@@ -3,11 +3,12 @@
 import numpy as np
 from numpy.typing import NDArray
 
-from passplan.sky.nodes import expanded, middles, polynomials, stencils
+from passplan.sky.nodes import expanded
 from passplan.sky.propagate import Arc
 from passplan.sky.ragged import counted
 from passplan.sky.roots import roots, secant
 from passplan.sky.sites import Sites
+from passplan.sky.views import View
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -30,11 +31,7 @@ def largest_range_rate_km_s(arc: Arc, sites: Sites, row: Ints, aos_s: Floats, lo
         los_s: ends.
     """
     owner, place = _samples((aos_s - arc.start_s) / arc.step_s, (los_s - arc.start_s) / arc.step_s)
-    range2 = -2.0 * sites.position_km @ arc.itrs_km
-    range2 += np.einsum("ij,ij->j", arc.itrs_km, arc.itrs_km)
-    range2 += np.einsum("ij,ij->i", sites.position_km, sites.position_km)[:, np.newaxis]
-    first = stencils(np.floor(place).astype(np.intp), arc.nodes)
-    curves, middle = polynomials(range2, row[owner][np.newaxis], first), middles(first)
+    curves, middle = View.of(arc, sites).curves(row[owner], np.floor(place).astype(np.intp))
     rate, (bend, _) = _rate(curves, place - middle), _bend(curves, place - middle)
     low = np.flatnonzero((owner[1:] == owner[:-1]) & ((bend[:-1] > 0.0) != (bend[1:] > 0.0)))
     curves, middle = curves[..., low], middle[low]
@@ -63,12 +60,20 @@ def _samples(begin: Floats, end: Floats) -> tuple[Ints, Floats]:
 
 def _rate(curves: Floats, place: Floats) -> Floats:
     """Return the range rate, km per node."""
-    (range2,), (slope,) = expanded(curves, place, 1)
-    rate: Floats = 0.5 * slope / np.sqrt(range2)
+    away, moving = expanded(curves, place, 1)
+    rate: Floats = np.einsum("am,am->m", away, moving) / np.sqrt(np.einsum("am,am->m", away, away))
     return rate
 
 
 def _bend(curves: Floats, place: Floats) -> tuple[Floats, Floats]:
-    """Return 2 q q'' - q'^2, of the sign of the range's second derivative, and its slope."""
-    (range2,), (slope,), (half_bend,), (sixth,) = expanded(curves, place, 3)
-    return 4.0 * range2 * half_bend - slope * slope, 12.0 * range2 * sixth
+    """Return 2 q q'' - q'^2, of the sign of the range's second derivative, and its slope 2 q q'''."""
+    away, moving, half_bend, sixth = expanded(curves, place, 3)
+
+    def product(one: Floats, other: Floats) -> Floats:
+        result: Floats = np.einsum("am,am->m", one, other)
+        return result
+
+    range2, half_slope = product(away, away), product(away, moving)
+    half_second = product(moving, moving) + 2.0 * product(away, half_bend)
+    third = 12.0 * (product(moving, half_bend) + product(away, sixth))
+    return 4.0 * (range2 * half_second - half_slope * half_slope), 2.0 * range2 * third

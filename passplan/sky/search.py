@@ -1,11 +1,10 @@
 """Stretches of one satellite above flat horizons, fast and missing none.
 
-Two smooth scalars describe a satellite over a station: its height above the station's
-tangent plane, z = r . up - c, and its squared range. sin(elevation) is z / range, its
-turning points are the roots of 2 z' range2 - z range2', and it stands above a level m where
-z - sin(m) range > 0. Both are interpolated between nodes, so SGP4 is asked at nodes only.
+A satellite's way east, north and up of a station is smooth and interpolated between nodes, so
+SGP4 is asked at nodes only. With H the squared horizontal distance, the elevation turns
+where up' H = up H' / 2, and stands above a level m where up - sin(m) range > 0.
 
-A stretch shorter than a step cannot hide between nodes: between two nodes z rises above
+A stretch shorter than a step cannot hide between nodes: between two nodes the height rises above
 both by at most A h^2 / 8 (A the largest acceleration, h the step), which picks the nodes worth
 a look; there turning points are found first, then crossings between nodes and turning points.
 """
@@ -15,10 +14,11 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from passplan.sky.nodes import expanded, middles, polynomials, slopes, stencils
+from passplan.sky.nodes import expanded
 from passplan.sky.propagate import Arc, largest_acceleration_km_s2, lowest_and_highest_km
 from passplan.sky.roots import Brackets, roots, secant
 from passplan.sky.sites import Sites
+from passplan.sky.views import View
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -48,42 +48,8 @@ class Stretches:
 
 
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
-class _Scene:
-    """One satellite over s stations.
-
-    Attributes:
-        pair: rows z, then rows range2, shape (2 s, n).
-        directions: what positions are multiplied by for z, then for range2, shape (2 s, 3).
-        motion: velocity per node and half the rate of the squared distance, shape (4, n).
-        level_sine: sin of the levels, shape (s,).
-        tolerance: of roots, in nodes.
-    """
-
-    pair: Floats
-    directions: Floats
-    motion: Floats
-    level_sine: Floats
-    tolerance: float
-
-    def rates(self, row: Ints, node: Ints) -> tuple[Floats, Floats]:
-        """Return the slopes of z and range2 at nodes, shape (m,) each."""
-        moving = self.motion[:, node]
-        height, range2 = (
-            np.einsum("mi,im->m", self.directions[rows], moving[:3])
-            for rows in (row, row + len(self.level_sine))
-        )
-        return height, range2 + 2.0 * moving[3]
-
-    def polynomials(self, rows: Ints, intervals: Ints) -> tuple[Floats, Floats]:
-        """Return polynomials of z and range2 (POINTS, 2, m) after nodes `intervals`, and their middles."""
-        first = stencils(intervals, self.pair.shape[1])
-        both = np.stack((rows, rows + len(self.level_sine)))
-        return polynomials(self.pair, both, first), middles(first)
-
-
-@dataclass(frozen=True, kw_only=True, slots=True, eq=False)
 class _Knots:
-    """Places in order at which `excess` = z - sin(level) range is known, shape (k,) each.
+    """Places in order at which `excess` = up - sin(level) range is known, shape (k,) each.
 
     `interval` is the node at or before; `turns` marks turning points; `linked` (k - 1,)
     says that nothing turns between a knot and the next.
@@ -97,52 +63,36 @@ class _Knots:
     linked: Bools
 
 
-def stretches(arc: Arc, sites: Sites, level_sine: Floats, first: int, last: int) -> Stretches:
-    """Return all stretches above flat levels between nodes `first` and `last` of an arc.
+def stretches(view: View, least_km: Floats, level_sine: Floats, first: int, last: int) -> Stretches:
+    """Return all stretches above flat levels between nodes `first` and `last`.
 
     Args:
-        arc: at least POINTS nodes.
-        sites: s stations.
+        view: one satellite over s stations.
+        least_km: from `least_height_km`, shape (s,).
         level_sine: sin of each station's level, shape (s,); may be negative.
         first: node to begin at.
         last: node to end at.
     """
-    scene = _scene(arc, sites, level_sine)
-    heights = scene.pair[: len(level_sine), first : last + 1]
-    near = heights > _least_height_km(arc, sites, level_sine)[:, np.newaxis]
+    near = view.up[:, first : last + 1] > least_km[:, np.newaxis]
     wide = near.copy()
     wide[:, :-1] |= near[:, 1:]
     wide[:, 1:] |= near[:, :-1]
     row, node = np.nonzero(wide)
-    knots, peaks = _knots(scene, row, node + first)
-    return _paired(scene, knots, peaks, first, last)
+    knots, peaks = _knots(view, level_sine, row, node + first)
+    return _paired(knots, _crossings(view, level_sine, knots), peaks, (first, last))
 
 
-def _scene(arc: Arc, sites: Sites, level_sine: Floats) -> _Scene:
-    """Return z and range2 of every station at every node: one matrix product."""
-    stations = len(level_sine)
-    directions = np.concatenate((sites.up, -2.0 * sites.position_km))
-    velocity = slopes(arc.itrs_km)
-    pair = directions @ arc.itrs_km
-    pair[:stations] -= sites.height_km[:, np.newaxis]
-    pair[stations:] += np.einsum("ij,ij->j", arc.itrs_km, arc.itrs_km)
-    pair[stations:] += np.einsum("ij,ij->i", sites.position_km, sites.position_km)[:, np.newaxis]
-    outward = np.einsum("ij,ij->j", arc.itrs_km, velocity)
-    return _Scene(
-        pair=pair,
-        directions=directions,
-        motion=np.concatenate((velocity, outward[np.newaxis])),
-        level_sine=level_sine,
-        tolerance=_TOLERANCE_S / arc.step_s,
-    )
-
-
-def _least_height_km(arc: Arc, sites: Sites, level_sine: Floats) -> Floats:
-    """Return z below which a node cannot be within a step of a place above the level, shape (s,).
+def least_height_km(arc: Arc, sites: Sites, level_sine: Floats) -> Floats:
+    """Return the height under which a node cannot be within a step of a place above the level, shape (s,).
 
     At the level, range d solves |site + d direction| = r; the plumb line leans by `lean` on the
-    line to the Earth's centre. z = sin(level) d is least at the lowest r, or, under a negative
+    line to the Earth's centre. The height sin(level) d is least at the lowest r, or, under a negative
     level, at the highest.
+
+    Args:
+        arc: the satellite.
+        sites: s stations.
+        level_sine: sin of each station's level, shape (s,).
     """
     lowest_km, highest_km = lowest_and_highest_km(arc.itrs_km)
     sagitta_km = largest_acceleration_km_s2(0.98 * lowest_km, highest_km) * arc.step_s**2 / 8.0
@@ -156,22 +106,19 @@ def _least_height_km(arc: Arc, sites: Sites, level_sine: Floats) -> Floats:
     return least_km
 
 
-def _knots(scene: _Scene, row: Ints, node: Ints) -> tuple[_Knots, Floats]:
-    """Return the candidate nodes and the turning points between them, and sin(elevation) at the knots."""
-    stations = len(scene.level_sine)
-    height, range2 = scene.pair[row, node], scene.pair[row + stations, node]
-    height_rate, range2_rate = scene.rates(row, node)
-    turning = 2.0 * height_rate * range2 - height * range2_rate
-    excess = height - scene.level_sine[row] * np.sqrt(range2)
+def _knots(view: View, level_sine: Floats, row: Ints, node: Ints) -> tuple[_Knots, Floats]:
+    """Return the candidate nodes and the turning points between them, and row, place, sine of the tops."""
+    (east, north, up), (d_east, d_north, d_up) = view.at_nodes(row, node)
+    flat2 = east * east + north * north
+    turning = d_up * flat2 - up * (east * d_east + north * d_north)
+    excess = up - level_sine[row] * np.sqrt(flat2 + up * up)
     linked = (np.diff(node) == 1) & (np.diff(row) == 0)
     climbs, above = turning > 0.0, excess > 0.0
     tops = climbs[:-1] & ~climbs[1:]
     dips = ~climbs[:-1] & climbs[1:] & above[:-1] & above[1:]
     turns = np.flatnonzero(linked & (tops | dips))
-    place, turn_height, turn_range2 = _turned(
-        scene, row[turns], node[turns], turning[turns], turning[turns + 1]
-    )
-    turn_excess = turn_height - scene.level_sine[row[turns]] * np.sqrt(turn_range2)
+    place, turn_up, turn_range = _turned(view, row[turns], node[turns], (turning[turns], turning[turns + 1]))
+    turn_excess = turn_up - level_sine[row[turns]] * turn_range
     is_turn = np.zeros(len(row) + len(turns), dtype=bool)
     is_turn[turns + np.arange(1, len(turns) + 1)] = True
     before = np.cumsum(~is_turn) - 1  # the node at or before each knot
@@ -184,8 +131,7 @@ def _knots(scene: _Scene, row: Ints, node: Ints) -> tuple[_Knots, Floats]:
         linked=linked[before[:-1]],
     )
     high = tops[turns] & (turn_excess > 0.0)
-    sine = turn_height / np.sqrt(turn_range2)
-    return knots, np.stack((row[turns][high], place[high], sine[high]))
+    return knots, np.stack((row[turns][high], place[high], (turn_up / turn_range)[high]))
 
 
 def _merged(second: Bools, one: Floats | Ints, other: Floats) -> Floats:
@@ -197,51 +143,56 @@ def _merged(second: Bools, one: Floats | Ints, other: Floats) -> Floats:
 
 
 def _turned(
-    scene: _Scene, row: Ints, node: Ints, before: Floats, after: Floats
+    view: View, row: Ints, node: Ints, at_ends: tuple[Floats, Floats]
 ) -> tuple[Floats, Floats, Floats]:
-    """Return places after `node` where the elevation turns, and z and range2 there, shape (m,) each."""
-    curves, middle = scene.polynomials(row, node)
+    """Return places after `node` where the elevation turns, and height and range there, shape (m,) each."""
+    curves, middle = view.curves(row, node)
 
     def turning(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
-        (z, range2), (dz, drange2), (half_ddz, half_ddrange2) = expanded(curves[..., which], place, 2)
-        slope = 4.0 * half_ddz * range2 + dz * drange2 - 2.0 * z * half_ddrange2
-        return 2.0 * dz * range2 - z * drange2, slope
+        here, rate, half_bend = expanded(curves[..., which], place, 2)
+        (east, north, up), (d_east, d_north, d_up) = here, rate
+        flat2, half_flat2_rate = east * east + north * north, east * d_east + north * d_north
+        bent = d_east * d_east + d_north * d_north + 2.0 * (east * half_bend[0] + north * half_bend[1])
+        slope = 2.0 * half_bend[2] * flat2 + d_up * half_flat2_rate - up * bent
+        return d_up * flat2 - up * half_flat2_rate, slope
 
     low = node - middle
-    place = roots(turning, secant(low, low + 1.0, before, after), scene.tolerance)
-    z, range2 = expanded(curves, place, 0)[0]
-    return place + middle, z, range2
+    place = roots(turning, secant(low, low + 1.0, *at_ends), _TOLERANCE_S / view.step_s)
+    (here,) = expanded(curves, place, 0)
+    return place + middle, here[2], np.sqrt(np.einsum("am,am->m", here, here))
 
 
-def _crossings(scene: _Scene, knots: _Knots) -> tuple[Ints, Floats, Bools]:
+def _crossings(view: View, level_sine: Floats, knots: _Knots) -> tuple[Ints, Floats, Bools]:
     """Return row, place and direction (True: rising) of every crossing of the level, in order."""
     above = knots.excess > 0.0
     low = np.flatnonzero(knots.linked & (above[:-1] != above[1:]))
     high = low + 1
     row = knots.row[low]
-    level_sine = scene.level_sine[row]
-    curves, middle = scene.polynomials(row, knots.interval[low])
+    sine = level_sine[row]
+    curves, middle = view.curves(row, knots.interval[low])
 
     def excess(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
-        (z, range2), (dz, drange2) = expanded(curves[..., which], place, 1)
-        range_km = np.sqrt(range2)
-        sine = level_sine[which]
-        return z - sine * range_km, dz - 0.5 * sine * drange2 / range_km
+        here, rate = expanded(curves[..., which], place, 1)
+        distance = np.sqrt(np.einsum("am,am->m", here, here))
+        receding = np.einsum("am,am->m", here, rate) / distance
+        return here[2] - sine[which] * distance, rate[2] - sine[which] * receding
 
     share = knots.excess[low] / (knots.excess[low] - knots.excess[high])
     share = np.where(knots.turns[low], np.sqrt(share), share)  # a parabola about its top
     share = np.where(knots.turns[high], 1.0 - np.sqrt(1.0 - share), share)
     start, stop = knots.place[low] - middle, knots.place[high] - middle
     guess = start + share * (stop - start)
-    place = roots(
-        excess, Brackets(low=start, high=stop, guess=guess, low_is_above=above[low]), scene.tolerance
-    )
+    brackets = Brackets(low=start, high=stop, guess=guess, low_is_above=above[low])
+    place = roots(excess, brackets, _TOLERANCE_S / view.step_s)
     return row, place + middle, above[high]
 
 
-def _paired(scene: _Scene, knots: _Knots, peaks: Floats, first: int, last: int) -> Stretches:
+def _paired(
+    knots: _Knots, crossings: tuple[Ints, Floats, Bools], peaks: Floats, ends: tuple[int, int]
+) -> Stretches:
     """Return the stretches between rising and falling crossings, those open at either end included."""
-    row, place, rising = _crossings(scene, knots)
+    row, place, rising = crossings
+    first, last = ends
     above = knots.excess > 0.0
     at_node = above & ~knots.turns
     open_first = at_node & (knots.place == first)

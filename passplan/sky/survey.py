@@ -12,12 +12,11 @@ from passplan.domain.elements import ElementSet
 from passplan.domain.moments import Horizon, Span, without
 from passplan.domain.passes import Pass, Sky
 from passplan.domain.station import Station
-from passplan.sky.horizon_lines import horizon_lines
 from passplan.sky.looks import looks, state
-from passplan.sky.overhead import Found, found
+from passplan.sky.overhead import Found, Ground, found
 from passplan.sky.propagate import Arc, arc, grids, step_s
 from passplan.sky.range_rates import largest_range_rate_km_s
-from passplan.sky.sites import Sites, sites
+from passplan.sky.sites import Sites
 from passplan.sky.sunlight import shadows
 
 Floats = NDArray[np.float64]
@@ -42,7 +41,7 @@ def survey(
         horizon: the week.
         since_s: shadows are wanted from here on, which may be before the week.
     """
-    places, lines = sites(stations), horizon_lines(stations)
+    ground = Ground.of(stations)
     grid = grids(horizon, since_s)
     passes: list[Pass] = []
     dark: dict[str, tuple[Span, ...]] = {}
@@ -50,8 +49,8 @@ def survey(
     for name in sorted(elements):
         flown = arc(elements[name], grid(step_s(elements[name])))
         dark[name] = shadows(flown, horizon, since_s)
-        seen = found(name, flown, places, lines, horizon)
-        passes.extend(_described(seen, flown, stations, places, dark[name]))
+        seen = found(name, flown, ground, horizon)
+        passes.extend(_described(seen, flown, stations, ground.places, dark[name]))
         if flown.end_s is not None and flown.end_s < horizon.end_s:
             ends[name] = flown.end_s
     passes.sort(key=lambda one: (one.aos_s, one.satellite, one.station))
