@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from passplan.sky.horizon_lines import HorizonLines
-from passplan.sky.nodes import expanded
+from passplan.sky.nodes import chosen, expanded
 from passplan.sky.ragged import counted
 from passplan.sky.roots import roots, secant
 from passplan.sky.search import Stretches, holders
@@ -184,7 +184,7 @@ def _refined(
     curves, middle = view.curves(knots.row[low], np.floor(start).astype(np.intp))
 
     def at(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
-        value, slope, half_bend = expanded(curves[..., which], place, 2)
+        value, slope, half_bend = expanded(chosen(curves, which), place, 2)
         return function((value, slope, half_bend), which)
 
     return middle + roots(at, secant(start - middle, stop - middle, *at_ends), _TOLERANCE_S / view.step_s)

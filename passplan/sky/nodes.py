@@ -50,6 +50,11 @@ def polynomials(values: Floats, rows: Ints, first: Ints) -> Floats:
     return powers
 
 
+def chosen(coefficients: Floats, which: Ints | slice) -> Floats:
+    """Return the polynomials of some places, told by index; `take` is far faster than brackets."""
+    return coefficients[..., which] if isinstance(which, slice) else coefficients.take(which, axis=-1)
+
+
 def expanded(coefficients: Floats, place: Floats, order: int) -> list[Floats]:
     """Return value, slope, half the bend, ... of polynomials at `place`: `order` + 1 arrays (c, m).
 

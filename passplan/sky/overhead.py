@@ -142,18 +142,20 @@ def _culminated(name: str, flown: Arc, places: Sites, seen: Stretches, end_s: fl
     ends = np.flatnonzero(lonely | (rise_s <= 0.0) | (fall_s >= end_s))
     of = np.concatenate((ends, ends, holder[held]))
     moments = np.concatenate((aos_s[ends], los_s[ends], peak_s[held]))
-    at_ends = looks(places, row[of[: 2 * len(ends)]], *state(flown, moments[: 2 * len(ends)]))
-    sine = np.concatenate((np.sin(np.radians(at_ends.elevation_deg)), seen.peak_sine[held]))
-    rising = np.argsort(sine, kind="stable")
-    tca_s = np.empty_like(aos_s)
+    at_ends = looks(places, row[of[: 2 * len(ends)]], *state(flown, moments[: 2 * len(ends)])).elevation_deg
+    at_peaks = np.degrees(np.arcsin(np.minimum(seen.peak_sine[held], 1.0)))
+    heights = np.concatenate((at_ends, at_peaks))
+    rising = np.argsort(heights, kind="stable")
+    tca_s, highest = np.empty_like(aos_s), np.empty_like(aos_s)
     tca_s[of[rising]] = moments[rising]  # of several, the last written stays: the highest
+    highest[of[rising]] = heights[rising]
     return Found(
         satellite=name,
         station=row,
         aos_s=aos_s,
         tca_s=tca_s,
         los_s=los_s,
-        max_elevation_deg=looks(places, row, *state(flown, tca_s)).elevation_deg,
+        max_elevation_deg=highest,
         open_start=rise_s <= 0.0,
         open_end=fall_s >= end_s,
     )

@@ -3,7 +3,7 @@
 import numpy as np
 from numpy.typing import NDArray
 
-from passplan.sky.nodes import expanded
+from passplan.sky.nodes import chosen, expanded
 from passplan.sky.propagate import Arc
 from passplan.sky.ragged import counted
 from passplan.sky.roots import roots, secant
@@ -34,10 +34,10 @@ def largest_range_rate_km_s(arc: Arc, sites: Sites, row: Ints, aos_s: Floats, lo
     curves, middle = View.of(arc, sites).curves(row[owner], np.floor(place).astype(np.intp))
     rate, (bend, _) = _rate(curves, place - middle), _bend(curves, place - middle)
     low = np.flatnonzero((owner[1:] == owner[:-1]) & ((bend[:-1] > 0.0) != (bend[1:] > 0.0)))
-    curves, middle = curves[..., low], middle[low]
+    curves, middle = chosen(curves, low), middle[low]
     start, stop = place[low] - middle, place[low + 1] - middle
     turn = roots(
-        lambda at, which: _bend(curves[..., which], at),
+        lambda at, which: _bend(chosen(curves, which), at),
         secant(start, stop, bend[low], bend[low + 1]),
         _TOLERANCE_S / arc.step_s,
     )

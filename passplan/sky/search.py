@@ -14,7 +14,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from passplan.sky.nodes import expanded
+from passplan.sky.nodes import chosen, expanded
 from passplan.sky.propagate import Arc, largest_acceleration_km_s2, lowest_and_highest_km
 from passplan.sky.roots import Brackets, roots, secant
 from passplan.sky.sites import Sites
@@ -77,7 +77,7 @@ def stretches(view: View, least_km: Floats, level_sine: Floats, first: int, last
     wide = near.copy()
     wide[:, :-1] |= near[:, 1:]
     wide[:, 1:] |= near[:, :-1]
-    row, node = np.nonzero(wide)
+    row, node = np.divmod(np.flatnonzero(wide), wide.shape[1])
     knots, peaks = _knots(view, level_sine, row, node + first)
     return _paired(knots, _crossings(view, level_sine, knots), peaks, (first, last))
 
@@ -149,7 +149,7 @@ def _turned(
     curves, middle = view.curves(row, node)
 
     def turning(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
-        here, rate, half_bend = expanded(curves[..., which], place, 2)
+        here, rate, half_bend = expanded(chosen(curves, which), place, 2)
         (east, north, up), (d_east, d_north, d_up) = here, rate
         flat2, half_flat2_rate = east * east + north * north, east * d_east + north * d_north
         bent = d_east * d_east + d_north * d_north + 2.0 * (east * half_bend[0] + north * half_bend[1])
@@ -172,7 +172,7 @@ def _crossings(view: View, level_sine: Floats, knots: _Knots) -> tuple[Ints, Flo
     curves, middle = view.curves(row, knots.interval[low])
 
     def excess(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
-        here, rate = expanded(curves[..., which], place, 1)
+        here, rate = expanded(chosen(curves, which), place, 1)
         distance = np.sqrt(np.einsum("am,am->m", here, here))
         receding = np.einsum("am,am->m", here, rate) / distance
         return here[2] - sine[which] * distance, rate[2] - sine[which] * receding

@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 from passplan.domain.constants import AU_KM, DAY_S, EARTH_RADIUS_KM, SUN_RADIUS_KM
 from passplan.domain.moments import Horizon, Span, merged
 from passplan.domain.passes import ShadowModel
-from passplan.sky.nodes import POINTS, expanded, middles, polynomials, slopes, stencils
+from passplan.sky.nodes import POINTS, chosen, expanded, middles, polynomials, slopes, stencils
 from passplan.sky.propagate import Arc
 from passplan.sky.roots import roots, secant
 
@@ -95,10 +95,10 @@ def _crossings(depth: Floats, first: int, last: int, tolerance: float) -> Floats
     curves, middle = _curves(depth, np.minimum(knots.astype(np.intp), last - 1))
     at_knots = expanded(curves, knots - middle, 0)[0][0]
     low = np.flatnonzero((at_knots[:-1] > 0.0) != (at_knots[1:] > 0.0))
-    curves, middle = curves[..., low], middle[low]
+    curves, middle = chosen(curves, low), middle[low]
 
     def dark(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
-        (value,), (rate,) = expanded(curves[..., which], place, 1)
+        (value,), (rate,) = expanded(chosen(curves, which), place, 1)
         return value, rate
 
     brackets = secant(knots[low] - middle, knots[low + 1] - middle, at_knots[low], at_knots[low + 1])
@@ -110,7 +110,7 @@ def _turns(depth: Floats, slope: Floats, node: Ints, tolerance: float) -> Floats
     curves, middle = _curves(depth, node)
 
     def rate(place: Floats, which: Ints | slice) -> tuple[Floats, Floats]:
-        _, (slope_there,), (half_bend,) = expanded(curves[..., which], place, 2)
+        _, (slope_there,), (half_bend,) = expanded(chosen(curves, which), place, 2)
         return slope_there, 2.0 * half_bend
 
     low = node - middle

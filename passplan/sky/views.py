@@ -21,7 +21,7 @@ class View:
 
     Attributes:
         rows: east of every station, then north, then up: shape (3 s, n).
-        axes: unit vectors east, north, up of each station, shape (3, s, 3).
+        axes: unit vectors east, north, up of each station, shape (3, 3, s): direction, component, station.
         motion_km: Earth-fixed velocity per node, shape (3, n).
         step_s: seconds between nodes.
     """
@@ -37,18 +37,19 @@ class View:
         axes = np.stack((sites.east, sites.north, sites.up))
         rows = axes.reshape(-1, 3) @ arc.itrs_km
         rows -= np.einsum("asi,si->as", axes, sites.position_km).reshape(-1, 1)
-        return cls(rows=rows, axes=axes, motion_km=slopes(arc.itrs_km), step_s=arc.step_s)
+        by_station = np.ascontiguousarray(axes.transpose(0, 2, 1))
+        return cls(rows=rows, axes=by_station, motion_km=slopes(arc.itrs_km), step_s=arc.step_s)
 
     @property
     def up(self) -> Floats:
         """Heights above the tangent planes, shape (s, n)."""
-        return self.rows[2 * self.axes.shape[1] :]
+        return self.rows[2 * self.axes.shape[2] :]
 
     def at_nodes(self, row: Ints, node: Ints) -> tuple[Floats, Floats]:
         """Return east, north, up of stations `row` at nodes, and their rates, shape (3, m) each."""
-        return self.rows[self._three(row), node], np.einsum(
-            "ami,im->am", self.axes[:, row], self.motion_km[:, node]
-        )
+        here = self.rows.ravel().take(self._three(row) * self.rows.shape[1] + node)
+        moving = np.einsum("aim,im->am", self.axes.take(row, axis=2), self.motion_km.take(node, axis=1))
+        return here, moving
 
     def curves(self, row: Ints, interval: Ints) -> tuple[Floats, Floats]:
         """Return polynomials of east, north, up (POINTS, 3, m) after nodes `interval`, and their middles."""
@@ -57,5 +58,5 @@ class View:
 
     def _three(self, row: Ints) -> Ints:
         """Return the indices of the three rows of each station, shape (3, m)."""
-        rows: Ints = row + self.axes.shape[1] * np.arange(3)[:, np.newaxis]
+        rows: Ints = row + self.axes.shape[2] * np.arange(3)[:, np.newaxis]
         return rows
