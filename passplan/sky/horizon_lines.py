@@ -68,10 +68,11 @@ def horizon_lines(stations: Sequence[Station]) -> HorizonLines:
             keys.append((turns + azimuth).ravel())
             elevations.append(np.tile(elevation, 3))
     key_deg, elevation_deg = np.concatenate(keys), np.concatenate(elevations)
+    rise, run = np.diff(elevation_deg), np.diff(key_deg)
     return HorizonLines(
         key_deg=key_deg,
         elevation_deg=elevation_deg,
-        slope=np.diff(elevation_deg) / np.diff(key_deg),
+        slope=np.divide(rise, run, out=np.zeros_like(rise), where=run > 0.0),  # corners may fall together
         lowest_deg=np.array([min(elevation for _, elevation in horizon) for horizon in horizons]),
         jagged=np.array([len(horizon) > 1 for horizon in horizons]),
     )
