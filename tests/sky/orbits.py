@@ -1,4 +1,4 @@
-"""Invented orbits and places for the tests of the sky, and a second-by-second sky that shares no code with it."""
+"""Invented orbits and places for the tests of the sky, and a plain sky that shares no code with it."""
 
 import math
 from datetime import datetime, timedelta

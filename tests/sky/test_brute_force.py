@@ -24,7 +24,9 @@ def faults(one: ElementSet, stations: list[Station], sky: Sky, end_s: float) -> 
         above = elevation_deg > line_deg(place, azimuth_deg)
         passes = [one for one in sky.passes if one.station == place.code and one.aos_s <= end_s]
         ours, sure = shadowed(passes, seconds)
-        found += [f"{place.code} differs at second {second:.0f}" for second in seconds[sure & (ours != above)]]
+        found += [
+            f"{place.code} differs at second {second:.0f}" for second in seconds[sure & (ours != above)]
+        ]
         middles = np.array([0.5 * (p.aos_s + p.los_s) for p in passes if p.length_s < 2.0])
         below = excess_deg(one, place, middles) < -1e-6
         found += [f"{place.code} invents a pass at {middle}" for middle in middles[below]]

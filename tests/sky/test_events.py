@@ -27,6 +27,7 @@ class Theirs:
         self.view = satellite - wgs84.latlon(place.latitude_deg, place.longitude_deg, place.altitude_m)
 
     def elevation_deg(self, seconds: Floats) -> Floats:
+        """Return Skyfield's elevation, all of its frames included."""
         start = WEEK.start
         time = self.scale.utc(start.year, start.month, start.day, 0, 0, seconds)
         degrees: Floats = self.view.at(time).altaz()[0].degrees
@@ -57,7 +58,9 @@ def test_events_are_within_a_millisecond_of_skyfields(orbit: str) -> None:
         own = [one for one in own if one.max_elevation_deg > level_deg + 0.05]
         if own:
             yard = Theirs(ORBITS[orbit], place)
-            aos, tca, los = (np.array([getattr(one, name) for one in own]) for name in ("aos_s", "tca_s", "los_s"))
+            aos, tca, los = (
+                np.array([getattr(one, name) for one in own]) for name in ("aos_s", "tca_s", "los_s")
+            )
             assert np.abs(aos - yard.crossing_s(aos, level_deg)).max() < 1e-4
             assert np.abs(los - yard.crossing_s(los, level_deg)).max() < 1e-4
             assert np.abs(tca - yard.top_s(tca)).max() < 1e-4
@@ -70,7 +73,9 @@ def test_the_search_finds_as_many_passes_as_skyfield() -> None:
     one, place = ORBITS["sun-synchronous 500 km"], FLAT[0]
     yard = Theirs(one, place)
     start = WEEK.start
-    begin, end = (yard.scale.utc(start.year, start.month, start.day, 0, 0, second) for second in (0.0, WEEK.end_s))
+    begin, end = (
+        yard.scale.utc(start.year, start.month, start.day, 0, 0, second) for second in (0.0, WEEK.end_s)
+    )
     satellite = EarthSatellite.from_satrec(satrec(one), yard.scale)
     where = wgs84.latlon(place.latitude_deg, place.longitude_deg, place.altitude_m)
     _, kinds = satellite.find_events(where, begin, end, place.least_receive_elevation_deg)

@@ -35,7 +35,7 @@ def polar_motion(vector_km: Floats) -> Floats:
 def test_teme_to_itrf_published_case() -> None:
     """With the case's polar motion put on top to 5e-8 km; left out, as we do, it is off by some metres.
 
-    The published numbers come from a Julian date in one float, which moves them by a centimetre: so does ours.
+    The published numbers come from a Julian date in one float, which moves them by a centimetre.
     """
     day, fraction = julian(AIAA_MOMENT)
     one_float = (day + fraction) + AIAA_UT1_MINUS_UTC_S / 86400.0

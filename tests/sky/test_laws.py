@@ -1,6 +1,7 @@
 """What must hold of any orbit, place and mask."""
 
 from dataclasses import replace
+from itertools import pairwise
 
 import numpy as np
 from hypothesis import HealthCheck, given, settings
@@ -90,12 +91,14 @@ def test_passes_are_in_order_and_apart(one: ElementSet, place: Station) -> None:
         assert 0.0 <= p.aos_s <= p.tca_s <= p.los_s <= SHORT.end_s
         assert (p.aos_s == 0.0) == (p.clipped in {"start", "both"})
         assert (p.los_s == SHORT.end_s) == (p.clipped in {"end", "both"})
-    assert all(before.los_s < after.aos_s for before, after in zip(passes, passes[1:], strict=False))
+    assert all(before.los_s < after.aos_s for before, after in pairwise(passes))
 
 
 @LAWS
 @given(one=orbits(), place=stations())
-def test_nowhere_in_a_pass_does_the_satellite_stand_higher_than_at_its_top(one: ElementSet, place: Station) -> None:
+def test_nowhere_in_a_pass_does_the_satellite_stand_higher_than_at_its_top(
+    one: ElementSet, place: Station
+) -> None:
     for p in seen(one, place)[:8]:
         day, fraction = SHORT.julian(0.0)
         seconds = np.linspace(p.aos_s, p.los_s, 201)
@@ -108,7 +111,9 @@ def test_nowhere_in_a_pass_does_the_satellite_stand_higher_than_at_its_top(one: 
 @given(one=orbits(), place=stations(), higher=st.floats(0.001, 20.0))
 def test_raising_the_mask_never_adds_time_in_view(one: ElementSet, place: Station, higher: float) -> None:
     lifted = tuple((azimuth, min(elevation + higher, 90.0)) for azimuth, elevation in place.mask)
-    raised = replace(place, mask=lifted, least_receive_elevation_deg=place.least_receive_elevation_deg + higher)
+    raised = replace(
+        place, mask=lifted, least_receive_elevation_deg=place.least_receive_elevation_deg + higher
+    )
     before, after = seen(one, place), seen(one, raised)
     for p in after:
         assert any(whole.aos_s - 1e-3 <= p.aos_s and p.los_s <= whole.los_s + 1e-3 for whole in before)
@@ -118,7 +123,10 @@ def test_raising_the_mask_never_adds_time_in_view(one: ElementSet, place: Statio
 @LAWS
 @given(one=orbits(), place=stations())
 def test_a_station_alone_or_among_others_sees_the_same(one: ElementSet, place: Station) -> None:
-    others = [station(12.0, 34.0, code="QBB"), station(-70.0, 100.0, mask=((0.0, 3.0), (90.0, 50.0)), code="QCC")]
+    others = [
+        station(12.0, 34.0, code="QBB"),
+        station(-70.0, 100.0, mask=((0.0, 3.0), (90.0, 50.0)), code="QCC"),
+    ]
     among = survey({"A": one, "B": element_set(97.4, 15.2)}, [others[0], place, others[1]], SHORT)
     own = [p for p in among.passes if p.satellite == "A" and p.station == place.code]
     for alone, together in zip(seen(one, place), own, strict=True):
@@ -140,4 +148,4 @@ def test_sunlit_and_dark_parts_make_up_each_pass(one: ElementSet) -> None:
         pieces = sorted(lit + dark)
         assert pieces[0][0] == p.aos_s
         assert pieces[-1][1] == p.los_s
-        assert all(a[1] == b[0] for a, b in zip(pieces, pieces[1:], strict=False))
+        assert all(a[1] == b[0] for a, b in pairwise(pieces))

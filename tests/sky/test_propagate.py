@@ -44,7 +44,9 @@ def published_run() -> dict[int, tuple[ElementSet, list[list[float]]]]:
     "Revisiting Spacetrack Report #3", AIAA 2006-6753.
     """
     folder = files("sgp4")
-    lines = [text for text in folder.joinpath("SGP4-VER.TLE").read_text().splitlines() if text[:2] in {"1 ", "2 "}]
+    lines = [
+        text for text in folder.joinpath("SGP4-VER.TLE").read_text().splitlines() if text[:2] in {"1 ", "2 "}
+    ]
     pairs = zip(lines[::2], lines[1::2], strict=True)
     sets = {record.satnum: as_elements(record) for record in (Satrec.twoline2rv(a, b[:69]) for a, b in pairs)}
     rows: dict[int, list[list[float]]] = {}
