@@ -26,7 +26,7 @@ class Looks:
 def state(arc: Arc, seconds: Floats) -> tuple[Floats, Floats]:
     """Return Earth-fixed positions (km) and their derivatives (km/s) at `seconds`, shape (3, m) each."""
     places = (seconds - arc.start_s) / arc.step_s
-    first = stencils(np.floor(places).astype(np.intp), arc.nodes)
+    first = stencils(np.floor(places).astype(np.intp), arc.itrs_km.shape[1])
     axes = np.arange(3)[:, np.newaxis] + np.zeros_like(first)
     position, per_node = expanded(polynomials(arc.itrs_km, axes, first), places - middles(first), 1)
     return position, per_node / arc.step_s

@@ -1,8 +1,11 @@
 """Smooth functions known at equally spaced nodes: values and slopes between them.
 
-A polynomial through the `POINTS` nodes around a place, half of them on either side, or
-as near to that as the ends of the row allow. Places are counted in nodes: 3.25 lies a
-quarter of a step after node 3. Source: Lagrange's form through equally spaced points.
+Between two nodes stands a polynomial through the `POINTS` nodes around, half of them on either
+side; the `MARGIN` first and last nodes of a row serve that only. Places are counted in nodes:
+3.25 lies a quarter of a step after node 3. Source: Lagrange's form through equally spaced points.
+
+Within half a step of the polynomial's middle the highest powers count for nothing (for a low orbit and
+300 s: the ninth term 0.2 mm), so only the `TERMS` lowest are kept.
 """
 
 import math
@@ -13,19 +16,30 @@ from numpy.typing import NDArray
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
-POINTS = 12
+POINTS = 16
+TERMS = 8
+MARGIN = POINTS // 2 - 1
 _MIDDLE = (POINTS - 1) / 2.0
 _OFFSETS = np.arange(POINTS)
-_TO_POWERS: Floats = np.linalg.inv(np.vander(_OFFSETS - _MIDDLE, increasing=True))
-_CHOICES = [np.array([[math.comb(p, k)] for p in range(k, POINTS)], dtype=np.float64) for k in range(4)]
 _BLOCK = 1024
-_SIDE = POINTS // 2 - 1
-_CENTRAL = 2 * _SIDE + 1
+_CHOICES = [np.array([[math.comb(p, k)] for p in range(k, TERMS)], dtype=np.float64) for k in range(4)]
+
+
+def _to_powers(points: int) -> Floats:
+    """Return the matrix from values at `points` nodes to coefficients about their middle, all powers."""
+    half = (points - 1) / 2.0
+    scaled = np.vander((np.arange(points) - half) / half, increasing=True)  # unscaled it is ill-conditioned
+    powers: Floats = np.linalg.inv(scaled) / half ** np.arange(points)[:, np.newaxis]
+    return powers
+
+
+_TO_POWERS = _to_powers(POINTS)[:TERMS].copy()
+_SLOPE_AT_NODE = _to_powers(2 * MARGIN + 1)[1]
 
 
 def stencils(intervals: Ints, nodes: int) -> Ints:
     """Return the first of the `POINTS` nodes to use between node k and k + 1, shape (m,)."""
-    return np.clip(intervals - _SIDE, 0, nodes - POINTS)
+    return np.clip(intervals - MARGIN, 0, nodes - POINTS)
 
 
 def middles(first: Ints) -> Floats:
@@ -42,11 +56,11 @@ def polynomials(values: Floats, rows: Ints, first: Ints) -> Floats:
         first: first node, shape (m,).
 
     Returns:
-        Coefficients in nodes from the middle of the stencil, shape (POINTS, c, m).
+        Coefficients in nodes from the middle of the stencil, shape (TERMS, c, m).
     """
     starts = rows * values.shape[1] + first
     taken = values.ravel().take(np.add.outer(_OFFSETS, starts))
-    powers: Floats = (_TO_POWERS @ taken.reshape(POINTS, -1)).reshape(taken.shape)
+    powers: Floats = (_TO_POWERS @ taken.reshape(POINTS, -1)).reshape(TERMS, *rows.shape)
     return powers
 
 
@@ -61,7 +75,7 @@ def expanded(coefficients: Floats, place: Floats, order: int) -> list[Floats]:
     Taylor's coefficients, per node: the k-th is sum over p of (p choose k) c[p] place^(p - k).
 
     Args:
-        coefficients: from `polynomials`, shape (POINTS, c, m).
+        coefficients: from `polynomials`, shape (TERMS, c, m).
         place: counted from the polynomials' middles, shape (m,).
         order: of the highest derivative wanted, at most 3.
     """
@@ -70,41 +84,26 @@ def expanded(coefficients: Floats, place: Floats, order: int) -> list[Floats]:
         part = slice(start, start + _BLOCK)
         powers = _powers(place[part])
         for k in range(order + 1):
-            lowered = _CHOICES[k] * powers[: POINTS - k]
+            lowered = _CHOICES[k] * powers[: TERMS - k]
             np.einsum("pcm,pm->cm", coefficients[k:, :, part], lowered, out=terms[k, :, part])
     return list(terms)
 
 
 def _powers(place: Floats) -> Floats:
-    """Return `place` to the powers 0 to POINTS - 1, shape (POINTS, m)."""
-    powers = np.empty((POINTS, len(place)))
+    """Return `place` to the powers 0 to TERMS - 1, shape (TERMS, m)."""
+    powers = np.empty((TERMS, len(place)))
     powers[0] = 1.0
     powers[1] = place
-    for p in range(2, POINTS):
+    for p in range(2, TERMS):
         np.multiply(powers[p // 2], powers[(p + 1) // 2], out=powers[p])
     return powers
 
 
-def _derivative_weights(place: float, points: int) -> Floats:
-    """Return weights of `points` nodes that give the derivative at `place`, counted from their middle."""
-    offsets = np.arange(points) - (points - 1) / 2.0
-    powers = np.arange(points)
-    row = powers * place ** np.maximum(powers - 1, 0)
-    weights: Floats = row @ np.linalg.inv(np.vander(offsets, increasing=True))
-    return weights
-
-
-_AT_NODE = _derivative_weights(0.0, _CENTRAL)
-_AT_ENDS = np.stack([_derivative_weights(offset - _MIDDLE, POINTS) for offset in range(POINTS)], axis=1)
-
-
 def slopes(values: Floats) -> Floats:
-    """Return derivatives (per node) at every node of functions of shape (r, n), n >= POINTS."""
-    result = np.empty_like(values)
+    """Return derivatives (per node) at the nodes of functions of shape (r, n), zero in the margins."""
+    result = np.zeros_like(values)
     for row, out in zip(values, result, strict=True):
-        out[_SIDE:-_SIDE] = np.correlate(row, _AT_NODE, mode="valid")
-    result[:, :_SIDE] = values[:, :POINTS] @ _AT_ENDS[:, :_SIDE]
-    result[:, -_SIDE:] = values[:, -POINTS:] @ _AT_ENDS[:, -_SIDE:]
+        out[MARGIN:-MARGIN] = np.correlate(row, _SLOPE_AT_NODE, mode="valid")
     return result
 
 

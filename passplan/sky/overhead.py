@@ -12,8 +12,7 @@ from passplan.domain.station import Station
 from passplan.sky.horizon_lines import HorizonLines, horizon_lines
 from passplan.sky.looks import looks, state
 from passplan.sky.mask_cuts import cut
-from passplan.sky.nodes import POINTS
-from passplan.sky.propagate import Arc, arc, grids, step_s
+from passplan.sky.propagate import Arc, fly, grids
 from passplan.sky.search import Stretches, holders, least_height_km, stretches
 from passplan.sky.sites import Sites, sites
 from passplan.sky.views import View
@@ -95,7 +94,7 @@ def passes_of(
     ground = Ground.of(stations)
     grid = grids(horizon, 0.0)
     for name in sorted(elements):
-        yield found(name, arc(elements[name], grid(step_s(elements[name]))), ground, horizon)
+        yield found(name, fly(elements[name], grid), ground, horizon)
 
 
 def found(name: str, flown: Arc, ground: Ground, horizon: Horizon) -> Found:
@@ -103,7 +102,7 @@ def found(name: str, flown: Arc, ground: Ground, horizon: Horizon) -> Found:
     end_s = horizon.end_s if flown.end_s is None else min(horizon.end_s, flown.end_s)
     first, last = flown.node_range(0.0, end_s)
     parts = [_NOTHING]
-    if flown.nodes >= POINTS and first < last:
+    if not flown.empty and first < last:
         parts += [_seen(flown, block, first, last) for block in ground.blocks]
     return _culminated(name, flown, ground.places, _chained(parts), end_s)
 

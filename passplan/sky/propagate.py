@@ -13,13 +13,13 @@ from passplan.domain.constants import DAY_S, EARTH_MU_KM3_S2
 from passplan.domain.elements import ElementSet
 from passplan.domain.moments import Horizon, julian
 from passplan.sky.frames import earth_rotation, horizon_julian, turned
-from passplan.sky.nodes import POINTS
+from passplan.sky.nodes import MARGIN, POINTS
 
 Floats = NDArray[np.float64]
 
 _SGP4_DAY_ZERO = 2433281.5  # sgp4init counts days from 1949-12-31 00:00 UTC
 _STEPS_S = (300, 240, 180, 150, 120, 90, 60, 30)  # whole seconds, for the second-by-second tracks
-_STEP_RAD = 0.28
+_STEP_RAD = 0.36
 
 
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
@@ -51,7 +51,7 @@ class Arc:
         start_s: second of the week of node 0, a whole number.
         step_s: between nodes.
         teme_km, itrs_km: inertial and Earth-fixed positions, shape (3, n).
-        end_s: the last node before SGP4 reports an error (decay); None if it never does.
+        end_s: where it ends when SGP4 reports an error (decay); None if it never does.
     """
 
     start_s: int
@@ -61,15 +61,15 @@ class Arc:
     end_s: float | None
 
     @property
-    def nodes(self) -> int:
-        """How many nodes there are; fewer than `POINTS` cannot be interpolated."""
-        return int(self.teme_km.shape[1])
+    def empty(self) -> bool:
+        """Whether there are too few nodes to interpolate between."""
+        return int(self.itrs_km.shape[1]) < POINTS
 
     def node_range(self, begin_s: float, end_s: float) -> tuple[int, int]:
         """Return the first and last node of the shortest stretch of nodes around [begin_s, end_s]."""
         first = math.floor((begin_s - self.start_s) / self.step_s)
         last = math.ceil((end_s - self.start_s) / self.step_s)
-        return max(first, 0), min(last, self.nodes - 1)
+        return max(first, MARGIN), min(last, self.itrs_km.shape[1] - 1 - MARGIN)
 
 
 def satrec(element_set: ElementSet) -> Satrec:
@@ -100,7 +100,7 @@ def satrec(element_set: ElementSet) -> Satrec:
 
 
 def step_s(element_set: ElementSet) -> int:
-    """Return a step at which interpolation between nodes stays within 2 cm.
+    """Return a step at which interpolation between nodes stays within 1 cm.
 
     The faster the satellite turns about the Earth at its lowest point, and the more
     eccentric its orbit, the shorter (limits found by trial, see the tests).
@@ -108,7 +108,7 @@ def step_s(element_set: ElementSet) -> int:
     eccentricity = element_set.eccentricity
     mean_rad_s = element_set.mean_motion_rev_day * 2.0 * math.pi / DAY_S
     perigee_rad_s = mean_rad_s * math.sqrt(1.0 + eccentricity) / (1.0 - eccentricity) ** 1.5
-    longest_s = _STEP_RAD / (1.0 + math.sqrt(eccentricity)) / perigee_rad_s
+    longest_s = _STEP_RAD / (1.0 + 1.2 * math.sqrt(eccentricity)) / perigee_rad_s
     return next((step for step in _STEPS_S if step <= longest_s), _STEPS_S[-1])
 
 
@@ -120,14 +120,24 @@ def grids(horizon: Horizon, since_s: float) -> Callable[[int], Grid]:
 
     @cache
     def grid(step: int) -> Grid:
-        start_s = math.floor(min(since_s, 0.0)) - POINTS * step
-        count = math.ceil((horizon.end_s - start_s) / step) + POINTS
+        start_s = math.floor(min(since_s, 0.0)) - MARGIN * step
+        count = math.ceil((horizon.end_s - start_s) / step) + MARGIN + 1
         seconds = start_s + step * np.arange(count, dtype=np.float64)
         julian_day, day = horizon_julian(horizon, seconds)
         rotation = earth_rotation(horizon, seconds)
         return Grid(start_s=start_s, step_s=step, julian_day=julian_day, day=day, rotation=rotation)
 
     return grid
+
+
+def fly(element_set: ElementSet, grid: Callable[[int], Grid]) -> Arc:
+    """Return the arc of a satellite in steps that suit it.
+
+    One that decays is flown in the smallest, so that little is lost before its end, and
+    where drag has brought the eccentricity to nothing and SGP4 itself has kinks.
+    """
+    flown = arc(element_set, grid(step_s(element_set)))
+    return flown if flown.end_s is None else arc(element_set, grid(_STEPS_S[-1]))
 
 
 def arc(element_set: ElementSet, grid: Grid) -> Arc:
@@ -137,12 +147,13 @@ def arc(element_set: ElementSet, grid: Grid) -> Arc:
     errors, positions, _ = record.sgp4_array(julian_days, grid.day)
     itrs_km = turned(positions.T, grid.rotation)
     first, stop = _good(errors, itrs_km, (record.jdsatepoch - grid.julian_day) + record.jdsatepochF, grid)
+    end_s = float(grid.start_s + (stop - 1 - MARGIN) * grid.step_s)
     return Arc(
         start_s=grid.start_s + first * grid.step_s,
         step_s=grid.step_s,
         teme_km=positions.T[:, first:stop],
         itrs_km=itrs_km[:, first:stop],
-        end_s=None if stop == len(errors) else float(grid.start_s + (stop - 1) * grid.step_s),
+        end_s=None if stop == len(errors) else end_s,
     )
 
 

@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 from passplan.domain.constants import AU_KM, DAY_S, EARTH_RADIUS_KM, SUN_RADIUS_KM
 from passplan.domain.moments import Horizon, Span, merged
 from passplan.domain.passes import ShadowModel
-from passplan.sky.nodes import POINTS, chosen, expanded, middles, polynomials, slopes, stencils
+from passplan.sky.nodes import chosen, expanded, middles, polynomials, slopes, stencils
 from passplan.sky.propagate import Arc
 from passplan.sky.roots import roots, secant
 
@@ -67,9 +67,9 @@ def shadows(flown: Arc, horizon: Horizon, since_s: float, model: ShadowModel = "
     """Return the spans (s of the week, merged, in order) in [since_s, end of horizon] spent in shadow."""
     end_s = horizon.end_s if flown.end_s is None else min(horizon.end_s, flown.end_s)
     first, last = flown.node_range(since_s, end_s)
-    if flown.nodes < POINTS or last <= first:
+    if flown.empty or last <= first:
         return ()
-    seconds = flown.start_s + flown.step_s * np.arange(flown.nodes, dtype=np.float64)
+    seconds = flown.start_s + flown.step_s * np.arange(flown.teme_km.shape[1], dtype=np.float64)
     day, fraction = horizon.julian(0.0)
     depth = darkness(flown.teme_km, sun_km(day + fraction + seconds / DAY_S), model)[np.newaxis]
     places = _crossings(depth, first, last, _TOLERANCE_S / flown.step_s)

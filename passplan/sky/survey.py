@@ -14,7 +14,7 @@ from passplan.domain.passes import Pass, Sky
 from passplan.domain.station import Station
 from passplan.sky.looks import looks, state
 from passplan.sky.overhead import Found, Ground, found
-from passplan.sky.propagate import Arc, arc, grids, step_s
+from passplan.sky.propagate import Arc, fly, grids
 from passplan.sky.range_rates import largest_range_rate_km_s
 from passplan.sky.sites import Sites
 from passplan.sky.sunlight import shadows
@@ -47,7 +47,7 @@ def survey(
     dark: dict[str, tuple[Span, ...]] = {}
     ends: dict[str, float] = {}
     for name in sorted(elements):
-        flown = arc(elements[name], grid(step_s(elements[name])))
+        flown = fly(elements[name], grid)
         dark[name] = shadows(flown, horizon, since_s)
         seen = found(name, flown, ground, horizon)
         passes.extend(_described(seen, flown, stations, ground.places, dark[name]))

@@ -11,7 +11,7 @@ from passplan.domain.passes import Pass, Track
 from passplan.domain.station import Station
 from passplan.sky.looks import looks
 from passplan.sky.nodes import POINTS, middles, stencils, weights
-from passplan.sky.propagate import Arc, arc, grids, step_s
+from passplan.sky.propagate import Arc, fly, grids
 from passplan.sky.ragged import counted
 from passplan.sky.sites import Sites, sites
 
@@ -37,7 +37,7 @@ def tracks(
     grid = grids(horizon, 0.0)
     result: dict[int, Track] = {}
     for name in sorted({one.satellite for one in passes}):
-        flown = arc(elements[name], grid(step_s(elements[name])))
+        flown = fly(elements[name], grid)
         which = np.array([number for number, one in enumerate(passes) if one.satellite == name])
         cut = _tracks(flown, places, row[which], [passes[number] for number in which])
         result.update(zip(which.tolist(), cut, strict=True))
@@ -74,10 +74,11 @@ def _each_second(flown: Arc, second: Ints) -> tuple[Floats, Floats]:
     Between nodes the same seconds return in every interval, so one table of weights serves all.
     """
     interval, rest = np.divmod(second - flown.start_s, flown.step_s)
-    met = np.zeros(flown.nodes, dtype=bool)
+    nodes = flown.itrs_km.shape[1]
+    met = np.zeros(nodes, dtype=bool)
     met[interval] = True
     used = np.flatnonzero(met)
-    first = stencils(used, flown.nodes)
+    first = stencils(used, nodes)
     shift = used - middles(first)
     table = np.empty((2, 3, len(used), flown.step_s))
     part = np.arange(flown.step_s) / flown.step_s

@@ -52,7 +52,7 @@ class View:
         return here, moving
 
     def curves(self, row: Ints, interval: Ints) -> tuple[Floats, Floats]:
-        """Return polynomials of east, north, up (POINTS, 3, m) after nodes `interval`, and their middles."""
+        """Return polynomials of east, north, up (TERMS, 3, m) after nodes `interval`, and their middles."""
         first = stencils(interval, self.rows.shape[1])
         return polynomials(self.rows, self._three(row), first), middles(first)
 

@@ -14,7 +14,7 @@ from passplan.domain.station import Station
 from passplan.sky import passes_of, survey, tracks
 from passplan.sky.frames import earth_rotation, turned
 from passplan.sky.looks import looks, state
-from passplan.sky.propagate import arc, grids, satrec, step_s
+from passplan.sky.propagate import fly, grids, satrec
 from passplan.sky.sites import sites
 from tests.sky.orbits import (
     FLAT,
@@ -74,7 +74,7 @@ def test_through_the_zenith_with_a_jagged_mask() -> None:
     mask: Mask = tuple((float(azimuth), 10.0 + 50.0 * (azimuth // 15 % 2)) for azimuth in range(0, 360, 15))
     place = replace(under(second), mask=mask)
     seconds = np.arange(second - 600.0, second + 600.0, 0.1)
-    flown = arc(LOW, grids(WEEK, 0.0)(step_s(LOW)))
+    flown = fly(LOW, grids(WEEK, 0.0))
     view = looks(sites([place]), np.zeros(len(seconds), dtype=np.intp), *state(flown, seconds))
     low = line_deg(place, view.azimuth_deg)
     up = view.elevation_deg > low
@@ -175,7 +175,8 @@ def test_passes_open_at_the_ends_are_cut_and_said_to_be() -> None:
     assert cut.clipped == "end"
     assert cut.los_s == cut.tca_s == cut_at.end_s, "it was still climbing"
     assert cut.max_elevation_deg < one.max_elevation_deg
-    assert survey({"A": LOW}, [station()], cut_at).passes[: len(week)] == week
+    same = survey({"A": LOW}, [station()], cut_at).passes[: len(week)]
+    assert spans(list(same)) == pytest.approx(spans(list(week)), abs=1e-6)
 
 
 def test_a_pass_open_at_the_start_has_its_top_at_the_start_when_it_is_sinking() -> None:

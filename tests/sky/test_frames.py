@@ -10,7 +10,7 @@ from skyfield.sgp4lib import theta_GMST1982
 from passplan.domain.moments import Horizon, julian
 from passplan.sky.frames import earth_rotation, gmst_rad, turned
 from passplan.sky.looks import looks, state
-from passplan.sky.propagate import arc, grids, satrec, step_s
+from passplan.sky.propagate import fly, grids, satrec
 from passplan.sky.sites import sites
 from passplan.sky.ut1 import ut1_minus_utc_s
 from tests.sky.orbits import FLAT, ORBITS, SCALE, WEEK, Floats, our_scale, station
@@ -104,7 +104,7 @@ def test_the_axes_of_a_place_stand_at_right_angles() -> None:
 @pytest.mark.parametrize("orbit", ["sun-synchronous 500 km", "400 x 1500 km", "24 h inclined"])
 def test_elevation_is_skyfields_to_a_millionth_of_a_degree(orbit: str) -> None:
     """Skyfield with all its frames, told our UT1; azimuth and range as well."""
-    flown = arc(ORBITS[orbit], grids(WEEK, 0.0)(step_s(ORBITS[orbit])))
+    flown = fly(ORBITS[orbit], grids(WEEK, 0.0))
     scale = our_scale()
     seconds = np.arange(17.0, WEEK.end_s, 1801.0)
     time = scale.utc(WEEK.start.year, WEEK.start.month, WEEK.start.day, 0, 0, seconds)
