@@ -64,6 +64,7 @@ class Ground:
     """All stations, and the same in blocks small enough for the cache of a processor."""
 
     places: Sites
+    jagged: Bools
     blocks: tuple[Block, ...]
 
     @classmethod
@@ -78,7 +79,8 @@ class Ground:
             )
             for start in range(0, len(stations), _BLOCK)
         ]
-        return cls(places=places, blocks=tuple(blocks))
+        jagged = np.concatenate([np.zeros(0, dtype=bool), *(block.lines.jagged for block in blocks)])
+        return cls(places=places, jagged=jagged, blocks=tuple(blocks))
 
 
 def passes_of(
@@ -104,7 +106,7 @@ def found(name: str, flown: Arc, ground: Ground, horizon: Horizon) -> Found:
     parts = [_NOTHING]
     if not flown.empty and first < last:
         parts += [_seen(flown, block, first, last) for block in ground.blocks]
-    return _culminated(name, flown, ground.places, _chained(parts), end_s)
+    return _culminated(name, flown, ground, _chained(parts), end_s)
 
 
 def _seen(flown: Arc, block: Block, first: int, last: int) -> Stretches:
@@ -122,11 +124,11 @@ def _chained(parts: Sequence[Stretches]) -> Stretches:
     return Stretches(**{name: np.concatenate([getattr(part, name) for part in parts]) for name in names})
 
 
-def _culminated(name: str, flown: Arc, places: Sites, seen: Stretches, end_s: float) -> Found:
+def _culminated(name: str, flown: Arc, ground: Ground, seen: Stretches, end_s: float) -> Found:
     """Return stretches cut to [0, end_s], each with its highest point.
 
-    That is the highest culmination inside, or the higher end where there is none: a pass
-    cut by the horizon, or by a notch in the mask, may climb or sink all along.
+    That is the highest culmination inside, or an end: a pass cut by the horizon, or by a notch in the
+    mask, may climb or sink all along, or end higher than it culminated.
     """
     rise_s, fall_s, peak_s = (
         flown.start_s + flown.step_s * place for place in (seen.rise, seen.fall, seen.peak)
@@ -138,10 +140,13 @@ def _culminated(name: str, flown: Arc, places: Sites, seen: Stretches, end_s: fl
     held = holder >= 0
     lonely = np.ones(len(row), dtype=bool)
     lonely[holder[held]] = False
-    ends = np.flatnonzero(lonely | (rise_s <= 0.0) | (fall_s >= end_s))
+    cut_short = (rise_s <= 0.0) | (fall_s >= end_s) | ground.jagged[row]
+    ends = np.flatnonzero(lonely | cut_short)
     of = np.concatenate((ends, ends, holder[held]))
     moments = np.concatenate((aos_s[ends], los_s[ends], peak_s[held]))
-    at_ends = looks(places, row[of[: 2 * len(ends)]], *state(flown, moments[: 2 * len(ends)])).elevation_deg
+    at_ends = looks(
+        ground.places, row[of[: 2 * len(ends)]], *state(flown, moments[: 2 * len(ends)])
+    ).elevation_deg
     at_peaks = np.degrees(np.arcsin(np.minimum(seen.peak_sine[held], 1.0)))
     heights = np.concatenate((at_ends, at_peaks))
     rising = np.argsort(heights, kind="stable")

@@ -269,3 +269,16 @@ def test_the_room_starts_fast() -> None:
     ).stdout.split()
     assert {"numpy", "sgp4"} <= set(loaded)
     assert not {"skyfield", "ortools", "pandas", "pydantic", "rich", "icalendar", "jplephem"} & set(loaded)
+
+
+def test_a_pass_cut_by_the_mask_may_end_higher_than_it_culminated() -> None:
+    """A slow figure of eight behind a slope: it culminates, sinks, and climbs until the slope hides it."""
+    slow = element_set(
+        3.0, 1.0027212374121073, 1.2e-5, perigee_deg=0.0, anomaly_deg=0.0, node_deg=39.0, bstar=0.0
+    )
+    place = station(0.0, 0.0, 0.0, -5.0, mask=((0.0, 1.0), (233.0, 67.0)))
+    passes = survey({"A": slow}, [place], WEEK).passes
+    assert len(passes) > 3
+    for one in passes:
+        (cut,) = tracks({"A": slow}, [place], [one], WEEK)
+        assert cut.elevation_deg.max() <= one.max_elevation_deg + 1e-9
