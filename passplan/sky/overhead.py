@@ -7,7 +7,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from passplan.domain.elements import ElementSet
-from passplan.domain.moments import Horizon
+from passplan.domain.moments import Horizon, Span
 from passplan.domain.station import Station
 from passplan.sky.horizon_lines import HorizonLines, horizon_lines
 from passplan.sky.looks import looks, state
@@ -106,7 +106,8 @@ def found(name: str, flown: Arc, ground: Ground, horizon: Horizon) -> Found:
     parts = [_NOTHING]
     if not flown.empty and first < last:
         parts += [_seen(flown, block, first, last) for block in ground.blocks]
-    return _culminated(name, flown, ground, _chained(parts), end_s)
+    begin_s = max(0.0, float(flown.start_s + flown.step_s * first))
+    return _culminated(name, flown, ground, _chained(parts), (begin_s, end_s))
 
 
 def _seen(flown: Arc, block: Block, first: int, last: int) -> Stretches:
@@ -124,23 +125,24 @@ def _chained(parts: Sequence[Stretches]) -> Stretches:
     return Stretches(**{name: np.concatenate([getattr(part, name) for part in parts]) for name in names})
 
 
-def _culminated(name: str, flown: Arc, ground: Ground, seen: Stretches, end_s: float) -> Found:
-    """Return stretches cut to [0, end_s], each with its highest point.
+def _culminated(name: str, flown: Arc, ground: Ground, seen: Stretches, span: Span) -> Found:
+    """Return stretches cut to a span, each with its highest point.
 
     That is the highest culmination inside, or an end: a pass cut by the horizon, or by a notch in the
     mask, may climb or sink all along, or end higher than it culminated.
     """
+    begin_s, end_s = span
     rise_s, fall_s, peak_s = (
         flown.start_s + flown.step_s * place for place in (seen.rise, seen.fall, seen.peak)
     )
-    inside = (fall_s > 0.0) & (rise_s < end_s)
+    inside = (fall_s > begin_s) & (rise_s < end_s)
     row, rise_s, fall_s = seen.row[inside], rise_s[inside], fall_s[inside]
-    aos_s, los_s = np.maximum(rise_s, 0.0), np.minimum(fall_s, end_s)
+    aos_s, los_s = np.maximum(rise_s, begin_s), np.minimum(fall_s, end_s)
     holder = holders(row, aos_s, los_s, seen.peak_row, peak_s)
     held = holder >= 0
     lonely = np.ones(len(row), dtype=bool)
     lonely[holder[held]] = False
-    cut_short = (rise_s <= 0.0) | (fall_s >= end_s) | ground.jagged[row]
+    cut_short = (rise_s <= begin_s) | (fall_s >= end_s) | ground.jagged[row]
     ends = np.flatnonzero(lonely | cut_short)
     of = np.concatenate((ends, ends, holder[held]))
     moments = np.concatenate((aos_s[ends], los_s[ends], peak_s[held]))
@@ -160,6 +162,6 @@ def _culminated(name: str, flown: Arc, ground: Ground, seen: Stretches, end_s: f
         tca_s=tca_s,
         los_s=los_s,
         max_elevation_deg=highest,
-        open_start=rise_s <= 0.0,
+        open_start=rise_s <= begin_s,
         open_end=fall_s >= end_s,
     )

@@ -69,16 +69,17 @@ def shadows(flown: Arc, horizon: Horizon, since_s: float, model: ShadowModel = "
     first, last = flown.node_range(since_s, end_s)
     if flown.empty or last <= first:
         return ()
+    begin_s = max(since_s, float(flown.start_s + flown.step_s * first))
     seconds = flown.start_s + flown.step_s * np.arange(flown.teme_km.shape[1], dtype=np.float64)
     day, fraction = horizon.julian(0.0)
     depth = darkness(flown.teme_km, sun_km(day + fraction + seconds / DAY_S), model)[np.newaxis]
     places = _crossings(depth, first, last, _TOLERANCE_S / flown.step_s)
     edges = [float(flown.start_s + flown.step_s * place) for place in places]
     if depth[0, first] > 0.0:
-        edges.insert(0, since_s)
+        edges.insert(0, begin_s)
     if depth[0, last] > 0.0:
         edges.append(end_s)
-    return tuple(merged(zip(edges[::2], edges[1::2], strict=True), since_s, end_s))
+    return tuple(merged(zip(edges[::2], edges[1::2], strict=True), begin_s, end_s))
 
 
 def _crossings(depth: Floats, first: int, last: int, tolerance: float) -> Floats:

@@ -40,6 +40,9 @@ def survey(
         stations: whose `horizon` lines count.
         horizon: the week.
         since_s: shadows are wanted from here on, which may be before the week.
+
+    Where SGP4 gives up (decay) everything ends some minutes earlier, at `propagation_end_s`, and a
+    pass open there is clipped. Elevations are geometric: refraction is left out.
     """
     ground = Ground.of(stations)
     grid = grids(horizon, since_s)

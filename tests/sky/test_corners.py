@@ -14,6 +14,7 @@ from passplan.domain.station import Station
 from passplan.sky import passes_of, survey, tracks
 from passplan.sky.frames import earth_rotation, turned
 from passplan.sky.looks import looks, state
+from passplan.sky.nodes import MARGIN
 from passplan.sky.propagate import fly, grids, satrec
 from passplan.sky.sites import sites
 from tests.sky.orbits import (
@@ -282,3 +283,19 @@ def test_a_pass_cut_by_the_mask_may_end_higher_than_it_culminated() -> None:
     for one in passes:
         (cut,) = tracks({"A": slow}, [place], [one], WEEK)
         assert cut.elevation_deg.max() <= one.max_elevation_deg + 1e-9
+
+
+def test_elements_that_fail_before_their_epoch_give_what_follows() -> None:
+    """Drag of the wrong sign: carried back from Sunday SGP4 fails in the week, and the rest is kept."""
+    one = element_set(51.6, *between(248.0, 252.0), bstar=-8e-3, epoch=WEEK.start + timedelta(days=6))
+    flown = fly(one, grids(WEEK, 0.0))
+    assert flown.start_s > 0.0
+    first_km = flown.itrs_km[:, MARGIN]
+    latitude_deg = float(np.degrees(np.arcsin(first_km[2] / np.linalg.norm(first_km))))
+    under_it = station(latitude_deg, float(np.degrees(np.arctan2(first_km[1], first_km[0]))))
+    sky = survey({"A": one}, [under_it], WEEK)
+    assert sky.passes[0].clipped == "start"
+    assert sky.passes[0].aos_s == flown.start_s + MARGIN * flown.step_s
+    assert all(p.clipped in {"", "end"} for p in sky.passes[1:])
+    assert sky.shadows["A"][0][0] > flown.start_s
+    assert sky.propagation_end_s == {}
