@@ -1,6 +1,6 @@
 """How fast the pass search is, beside Skyfield's, and how far its events are from Skyfield's.
 
-    python tests/benchmarks/pass_search.py
+    python -m tests.benchmarks.pass_search
 
 One thread; every figure is the least CPU time of repeated runs within this process, and
 bars are ratios of them. Both sides work from the element sets in memory to event times.
