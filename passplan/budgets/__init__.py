@@ -1,1 +1,1 @@
-"""What a pass is worth and what it costs: link, data, energy, people; joined into a Problem."""
+"""What a pass is worth and what it costs, joined into a `Problem`."""

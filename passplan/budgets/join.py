@@ -17,6 +17,7 @@ from passplan.domain.problem import (
     Craft,
     IdleSpan,
     OfferedPass,
+    Option,
     Person,
     Placing,
     Problem,
@@ -25,6 +26,7 @@ from passplan.domain.problem import (
     StoredKind,
     StoredPartition,
     Terms,
+    Unstaffed,
     WantedCommand,
     WantedSession,
 )
@@ -44,6 +46,7 @@ def join(mission: Mission, horizon: Horizon, sky: Sky, tracks: Sequence[Track]) 
     asked = occurrences(mission.commands, horizon)
     commands = wanted_commands(mission, horizon, asked)
     found = _all_runs(mission, horizon, sky, tracks)
+    offers, unstaffed = _offers(mission, horizon, found, asked, commands)
     return Problem(
         horizon=horizon,
         terms=_terms(mission),
@@ -61,9 +64,10 @@ def join(mission: Mission, horizon: Horizon, sky: Sky, tracks: Sequence[Track]) 
             )
             for operator in mission.operators
         ),
-        passes=_offers(mission, horizon, found, asked, commands),
+        passes=offers,
         commands=commands,
         sessions=_sessions(mission, horizon),
+        unstaffed=unstaffed,
     )
 
 
@@ -141,27 +145,31 @@ def _offers(
     found: Sequence[Run],
     asked: Sequence[Command],
     commands: Sequence[WantedCommand],
-) -> tuple[OfferedPass, ...]:
-    """Return the passes that have at least one contact option and one operator."""
+) -> tuple[tuple[OfferedPass, ...], tuple[Unstaffed, ...]]:
+    """Return the passes with a contact option and a licensed operator, and those that lack one."""
     free = {person.handle: free_spans(person, horizon) for person in mission.operators}
     night = [mission.planning.night]
     nights = {person.handle: weekly_spans(night, person.time_zone, horizon) for person in mission.operators}
     satellites = [satellite.name for satellite in mission.satellites]
     stations = [station.code for station in mission.stations]
-    offers = []
+    offers, unstaffed = [], []
     for number, run in enumerate(found):
         station = mission.station(run.sight.station)
         pieces = options(mission, run, _overlapping(found, number))
         people = duties(mission, horizon, run.sight, pieces, free, nights)
+        where = satellites.index(run.sight.satellite), stations.index(run.sight.station)
         if not any(mission.operators[duty.operator].may_control for duty in people):
+            unstaffed.append(
+                Unstaffed(satellite=where[0], station=where[1], start_s=run.start_s, end_s=run.end_s)
+            )
             continue
         wishes = sorted({c.least_elevation_deg for c in commands if c.least_elevation_deg is not None})
         floor = station.transmit_floor_deg
         reaches = [(floor, *run.reach(floor))] + [(wish, *run.reach(max(wish, floor))) for wish in wishes]
         offers.append(
             OfferedPass(
-                satellite=satellites.index(run.sight.satellite),
-                station=stations.index(run.sight.station),
+                satellite=where[0],
+                station=where[1],
                 sight=run.sight,
                 peak_s=run.peak_s,
                 peak_number=run.number,
@@ -175,7 +183,7 @@ def _offers(
                 placings=_placings(horizon, run, pieces, asked),
             )
         )
-    return tuple(offers)
+    return tuple(offers), tuple(unstaffed)
 
 
 def _overlapping(found: Sequence[Run], number: int) -> list[Run]:
@@ -195,7 +203,7 @@ def _overlapping(found: Sequence[Run], number: int) -> list[Run]:
     return near
 
 
-def _placings(horizon: Horizon, run: Run, pieces: Sequence, asked: Sequence[Command]) -> tuple[Placing, ...]:
+def _placings(horizon: Horizon, run: Run, pieces: Sequence[Option], asked: Sequence[Command]) -> tuple[Placing, ...]:
     """Return which commands could go up in which options of a run."""
     found = []
     for number, command in enumerate(asked):
@@ -260,7 +268,7 @@ def _craft(mission: Mission, horizon: Horizon, satellite: Satellite, sky: Sky) -
     return Craft(
         name=satellite.name,
         idle=tuple(
-            IdleSpan(start_s=s.start_s, end_s=s.end_s, net_w=s.net_w) for s in spans
+            IdleSpan(start_s=s.start_s, end_s=s.end_s, sunlit=s.sunlit, net_w=s.net_w) for s in spans
         ),
         draw_w=satellite.transmitter_draw_w,
         capacity_j=battery.capacity_j,

@@ -10,6 +10,12 @@ class PassplanError(Exception):
     exit_code = 2
 
 
+class NothingVerifiedError(PassplanError):
+    """No plan came through the second reading."""
+
+    exit_code = 3
+
+
 class HeldError(PassplanError):
     """Another passplan process is writing in this workspace."""
 

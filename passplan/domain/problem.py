@@ -175,6 +175,7 @@ class IdleSpan:
 
     start_s: float
     end_s: float
+    sunlit: bool
     net_w: float
 
 
@@ -247,6 +248,16 @@ class Terms:
     give_night_min: float
 
 
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Unstaffed:
+    """A usable pass that no licensed operator could run, kept for the words of "why not"."""
+
+    satellite: int
+    station: int
+    start_s: int
+    end_s: int
+
+
 @dataclass(frozen=True, kw_only=True, slots=True, eq=False)
 class Problem:
     """One week as mathematics may see it; passes are in order of peak."""
@@ -259,3 +270,4 @@ class Problem:
     passes: tuple[OfferedPass, ...]
     commands: tuple[WantedCommand, ...]
     sessions: tuple[WantedSession, ...]
+    unstaffed: tuple[Unstaffed, ...] = ()

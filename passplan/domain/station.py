@@ -140,6 +140,11 @@ class Station(Checked):
         return faults
 
     @property
+    def transmit_floor_deg(self) -> float:
+        """Elevation under which the station never transmits."""
+        return max(self.least_transmit_elevation_deg, self.least_receive_elevation_deg)
+
+    @property
     def horizon(self) -> tuple[tuple[float, float], ...]:
         """The mask and the least receive elevation in one: (azimuth deg, elevation deg) corners.
 

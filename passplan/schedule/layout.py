@@ -60,17 +60,19 @@ def started(problem: Problem, names: Variables, values: Values) -> dict[int, int
 def _contact(problem: Problem, names: Variables, values: Values, index: int, option: Option) -> LaidOut:
     """Lay one contact out: commands stand as near to the downlink as they can, the downlink to the peak."""
     offered = problem.passes[index]
-    left = _commands(problem, names.up_left, values, index, rising=True)
-    right = _commands(problem, names.up_right, values, index, rising=False)
     begin = option.start_s + problem.terms.acquire_s
     end = option.end_s - problem.terms.close_s
     left_end, right_begin = min(end, offered.peak_s), max(begin, offered.peak_s)
-    sent_left = _seconds(problem, names, values, index, "left", left, max(0, left_end - begin))
-    sent_right = _seconds(problem, names, values, index, "right", right, max(0, end - right_begin))
+    left = _chosen(names.up_left, values, index)
+    right = _chosen(names.up_right, values, index)
+    before, after = _sides(problem, names, values, index, (left, right), (begin, end))
+    left, right = _ordered(problem, left + before, rising=True), _ordered(problem, right + after, rising=False)
+    rooms = (max(0, left_end - begin) - _total_s(problem, left), max(0, end - right_begin) - _total_s(problem, right))
+    sent_left, sent_right = _downlink_s(problem, names, values, index, rooms)
     slots = [Slot(kind="acquire", start_s=option.start_s, end_s=begin)]
-    slots += _before(problem, left, left_end - sent_left)
+    slots += _uplinks(problem, left, left_end - sent_left - _total_s(problem, left))
     slots += _downlinks([(left_end - sent_left, left_end), (right_begin, right_begin + sent_right)])
-    slots += _after(problem, right, right_begin + sent_right)
+    slots += _uplinks(problem, right, right_begin + sent_right)
     if end < option.end_s:
         slots.append(Slot(kind="close", start_s=end, end_s=option.end_s))
     return LaidOut(
@@ -85,11 +87,66 @@ def _contact(problem: Problem, names: Variables, values: Values, index: int, opt
     )
 
 
-def _commands(
-    problem: Problem, side: dict[tuple[int, int], int], values: Values, index: int, *, rising: bool
-) -> list[int]:
-    """Return the commands of one side in order: low ones outside, chained ones one after the other."""
-    chosen = [command for (command, where), column in side.items() if where == index and values[column] > 0.5]
+def _total_s(problem: Problem, commands: Sequence[int]) -> int:
+    """Return the seconds that commands take together."""
+    return sum(problem.commands[command].seconds for command in commands)
+
+
+def _sides(
+    problem: Problem,
+    names: Variables,
+    values: Values,
+    index: int,
+    fixed: tuple[list[int], list[int]],
+    inside: tuple[int, int],
+) -> tuple[list[int], list[int]]:
+    """Return which of the commands that may stand on either side go before and after the downlink.
+
+    Every split is weighed: one that fits both rooms and comes nearest to the seconds that
+    the solution leans to the left.
+    """
+    offered = problem.passes[index]
+    free = _chosen(names.up_either, values, index)
+    if not free:
+        return [], []
+    reach = offered.reaches[0]
+    begin, end = inside
+    room_left = max(0, min(end, offered.peak_s) - max(begin, reach.rise_s)) - _total_s(problem, fixed[0])
+    room_right = max(0, min(end, reach.fall_s) - max(begin, offered.peak_s)) - _total_s(problem, fixed[1])
+    leaning_s = float(values[names.leaning[index]])
+
+    def unfit(mask: int) -> tuple[float, float, int]:
+        left_s = sum(problem.commands[c].seconds for k, c in enumerate(free) if mask >> k & 1)
+        right_s = _total_s(problem, free) - left_s
+        return max(0, left_s - room_left) + max(0, right_s - room_right), abs(left_s - leaning_s), mask
+
+    best = min(range(1 << len(free)), key=unfit)
+    return [c for k, c in enumerate(free) if best >> k & 1], [c for k, c in enumerate(free) if not best >> k & 1]
+
+
+def _downlink_s(
+    problem: Problem, names: Variables, values: Values, index: int, rooms: tuple[int, int]
+) -> tuple[int, int]:
+    """Return whole downlink seconds before and after the peak, as far as the rooms let them.
+
+    What the choice of sides pushes out of one room goes to the other.
+    """
+    sent = {"left": 0.0, "right": 0.0}
+    for part, column in zip(problem.passes[index].slices, names.t[index], strict=True):
+        sent[part.side] += float(values[column])
+    total = int(sum(sent.values()) + 0.5)
+    left = max(0, min(int(sent["left"] + 0.5), rooms[0]))
+    right = max(0, min(total - left, rooms[1]))
+    return max(left, min(total - right, rooms[0])), right
+
+
+def _chosen(side: dict[tuple[int, int], int], values: Values, index: int) -> list[int]:
+    """Return the commands of one pass that a solution sends on one side."""
+    return [command for (command, where), column in side.items() if where == index and values[column] > 0.5]
+
+
+def _ordered(problem: Problem, chosen: list[int], *, rising: bool) -> list[int]:
+    """Return commands of one side in order: low ones outside, chained ones one after the other."""
     rank = _ranks(problem, chosen)
 
     def place(command: int) -> tuple[float, int, float, int]:
@@ -111,32 +168,7 @@ def _ranks(problem: Problem, chosen: Sequence[int]) -> dict[int, int]:
     return rank
 
 
-def _seconds(
-    problem: Problem,
-    names: Variables,
-    values: Values,
-    index: int,
-    side: str,
-    commands: Sequence[int],
-    room: int,
-) -> int:
-    """Return the downlink seconds of one side, whole, as far as the commands beside them leave room."""
-    sent = sum(
-        float(values[column])
-        for part, column in zip(problem.passes[index].slices, names.t[index], strict=True)
-        if part.side == side
-    )
-    taken = sum(problem.commands[command].seconds for command in commands)
-    return max(0, min(int(sent + 0.5), room - taken))
-
-
-def _before(problem: Problem, commands: Sequence[int], end: int) -> list[Slot]:
-    """Return uplink slots that end where the downlink begins."""
-    begin = end - sum(problem.commands[command].seconds for command in commands)
-    return _after(problem, commands, begin)
-
-
-def _after(problem: Problem, commands: Sequence[int], begin: int) -> list[Slot]:
+def _uplinks(problem: Problem, commands: Sequence[int], begin: int) -> list[Slot]:
     """Return uplink slots one after the other from a moment on."""
     slots = []
     for command in commands:

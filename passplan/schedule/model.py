@@ -1,7 +1,8 @@
 """A mixed-integer model as plain columns and rows, handed whole to a solver of OR-Tools."""
 
+import threading
 import time
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import timedelta
 from typing import Literal
@@ -11,11 +12,19 @@ from numpy.typing import NDArray
 from ortools.math_opt import model_pb2
 from ortools.math_opt.python import mathopt
 from ortools.math_opt.solvers import highs_pb2
+from ortools.util.python.solve_interrupter import SolveInterrupter
 
 Term = tuple[int, float]
 Solver = Literal["highs", "scip"]
 Status = Literal["optimal", "feasible", "infeasible", "unknown"]
 Values = NDArray[np.float64]
+
+_CHUNK = 40
+# Bit of HiGHS's presolve rule "aggregator", which would put the short rows together again.
+_AGGREGATOR_OFF = 1 << 12
+
+# After Ctrl-C a solver gets this long to let go; then it is left behind.
+_GRACE_S = 2.0
 
 _SOLVERS = {"highs": mathopt.SolverType.HIGHS, "scip": mathopt.SolverType.GSCIP}
 
@@ -80,6 +89,24 @@ class Model:
         self.row_upper.append(upper)
         return index
 
+    def long_row(self, terms: Sequence[Term], lower: float = -np.inf, upper: float = np.inf) -> None:
+        """Add a row of many terms as a sum of short ones, in the order given.
+
+        Cuts that HiGHS aggregates along continuous columns become as dense as the
+        densest row on their way; a row over the whole week made each round of cuts ten
+        times slower.
+        """
+        if len(terms) <= 2 * _CHUNK:
+            self.row(terms, lower, upper)
+            return
+        sums: list[Term] = []
+        for place in range(0, len(terms), _CHUNK):
+            part = self.column(-np.inf)
+            sums.append((part, 1.0))
+            chunk = [(part, 1.0), *((column, -value) for column, value in terms[place : place + _CHUNK])]
+            self.row(chunk, *((-np.inf, 0.0) if np.isfinite(lower) else (0.0, np.inf)))
+        self.row(sums, lower, upper)
+
     def fix(self, column: int, value: float) -> None:
         """Hold a column at a value."""
         self.lower[column] = self.upper[column] = value
@@ -112,25 +139,29 @@ class Model:
             whole: the objective is a count, so a gap under 1 proves it.
             hint: a solution to start from, for solvers that listen.
         """
-        begin = time.process_time()
+        begin = time.perf_counter()
         model = mathopt.Model.from_model_proto(self._proto(objective, maximise=maximise, relaxed=relaxed))
         parameters = mathopt.SolveParameters(
             time_limit=timedelta(seconds=max(0.05, seconds)),
             relative_gap_tolerance=gap,
             absolute_gap_tolerance=0.999 if whole else 1e-9,
-            highs=highs_pb2.HighsOptionsProto(int_options={"threads": 1}) if solver == "highs" else None,
+            highs=highs_pb2.HighsOptionsProto(int_options={"threads": 1, "presolve_rule_off": _AGGREGATOR_OFF}) if solver == "highs" else None,
         )
         extra = mathopt.ModelSolveParameters()
         if hint is not None:
-            columns = {model.get_variable(n): float(v) for n, v in enumerate(hint) if self.integer[n]}
+            # HiGHS fails on a hint outside the bounds, which fixing columns may have narrowed.
+            columns = {
+                model.get_variable(n): min(max(round(float(v)), self.lower[n]), self.upper[n])
+                for n, v in enumerate(hint)
+                if self.integer[n]
+            }
             extra.solution_hints.append(mathopt.SolutionHint(variable_values=columns))
         try:
-            result = mathopt.solve(model, _SOLVERS[solver], params=parameters, model_params=extra)
-        except (AttributeError, RuntimeError, ValueError) as error:
-            print("ERR", error)
+            result = _interruptible(model, _SOLVERS[solver], parameters, extra)
+        except (AttributeError, RuntimeError, ValueError):
             # A failed solve can surface as an AttributeError about a status code.
-            return Answer("unknown", np.empty(0), np.nan, np.nan, time.process_time() - begin)
-        return self._answer(result, time.process_time() - begin)
+            return Answer("unknown", np.empty(0), np.nan, np.nan, time.perf_counter() - begin)
+        return self._answer(result, time.perf_counter() - begin)
 
     def _answer(self, result: mathopt.SolveResult, seconds: float) -> Answer:
         """Return a solver's result in our words."""
@@ -165,3 +196,35 @@ class Model:
         proto.linear_constraint_matrix.column_ids.extend(self.column_of)
         proto.linear_constraint_matrix.coefficients.extend(self.coefficient)
         return proto
+
+
+def _interruptible(
+    model: mathopt.Model,
+    solver: mathopt.SolverType,
+    parameters: mathopt.SolveParameters,
+    extra: mathopt.ModelSolveParameters,
+) -> mathopt.SolveResult:
+    """Solve in a thread of its own, so that Ctrl-C is heard while the solver works."""
+    stop = SolveInterrupter()
+    found: list[mathopt.SolveResult | Exception] = []
+
+    def work() -> None:
+        try:
+            found.append(
+                mathopt.solve(model, solver, params=parameters, model_params=extra, interrupter=stop)
+            )
+        except (AttributeError, RuntimeError, ValueError) as error:
+            found.append(error)
+
+    worker = threading.Thread(target=work, daemon=True)
+    worker.start()
+    try:
+        while worker.is_alive():
+            worker.join(0.2)
+    except KeyboardInterrupt:
+        stop.interrupt()
+        worker.join(_GRACE_S)
+        raise
+    if isinstance(found[0], Exception):
+        raise found[0]
+    return found[0]

@@ -6,7 +6,7 @@ min(E + gain, top), as a chain of such steps is again one.
 
 from bisect import bisect_right
 from collections import defaultdict
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from passplan.domain.problem import Craft, IdleSpan, Problem
 from passplan.domain.rules import Rule
@@ -51,9 +51,7 @@ def spans_between(craft: Craft, begin_s: float, end_s: float) -> list[IdleSpan]:
     for span in craft.idle[first:]:
         if span.start_s >= end_s:
             break
-        found.append(
-            IdleSpan(start_s=max(begin_s, span.start_s), end_s=min(end_s, span.end_s), net_w=span.net_w)
-        )
+        found.append(replace(span, start_s=max(begin_s, span.start_s), end_s=min(end_s, span.end_s)))
     return found
 
 
@@ -84,7 +82,7 @@ def _nodes(problem: Problem, craft: Craft, number: int) -> list[float]:
     for offered in problem.passes:
         if offered.satellite == number:
             for part in offered.slices:
-                edges |= {float(part.minute_s), float(part.minute_s + GRID_S)}
+                edges |= {float(part.minute_s // GRID_S * GRID_S), float((part.minute_s // GRID_S + 1) * GRID_S)}
     runs: list[tuple[float, float]] = []
     for session in problem.sessions:
         if session.satellite == number:

@@ -1,10 +1,11 @@
 """Rows of the contacts: one conversation at a time, and the seconds each side of the peak."""
 
-from collections.abc import Callable, Iterator, Sequence
+import math
+from collections.abc import Iterator, Mapping, Sequence
 
-from passplan.domain.problem import OfferedPass, Option, Problem
+from passplan.domain.problem import OfferedPass, Problem, Side
 from passplan.domain.rules import Rule
-from passplan.schedule.model import Model
+from passplan.schedule.model import Model, Term
 from passplan.schedule.variables import Variables
 
 Interval = tuple[float, float, int]
@@ -75,13 +76,17 @@ def _conversations(problem: Problem, model: Model, names: Variables) -> None:
 
 
 def _stations(problem: Problem, model: Model, names: Variables) -> None:
-    """A station has one contact at a time with its set-up between, but not between two peaks of one visibility."""
+    """A station has one contact at a time with its set-up between.
+
+    Between two peaks of one visibility nothing is set up; with several satellites that
+    is given up, as the pause would have to know whose contact comes next.
+    """
     for station, site in enumerate(problem.sites):
         here = [index for index, offered in enumerate(problem.passes) if offered.station == station]
         intervals: list[Interval] = []
         for index in here:
             offered = problem.passes[index]
-            more = 0.0 if _goes_on(problem, here, offered) else site.set_up_s
+            more = 0.0 if len(problem.crafts) == 1 and _goes_on(problem, here, offered) else site.set_up_s
             for number, option in enumerate(offered.options):
                 intervals.append((option.start_s, option.end_s + more, names.x[index][number]))
         for clique in cliques(intervals):
@@ -137,23 +142,38 @@ def _slices(model: Model, names: Variables, index: int, offered: OfferedPass) ->
 def _left(problem: Problem, model: Model, names: Variables, index: int) -> None:
     """Commands before the downlink and the downlink before the peak share the seconds left of the peak."""
     offered, terms = problem.passes[index], problem.terms
-
-    def room(option: Option, rise_s: int) -> float:
-        begin = max(option.start_s + terms.acquire_s, rise_s)
-        return max(0.0, float(min(option.end_s - terms.close_s, offered.peak_s) - begin))
-
-    _side(problem, model, names, index, "left", names.up_left, room, lambda reach: reach[0])
+    placed = {command: column for (command, where), column in names.up_left.items() if where == index}
+    leaning = [(names.leaning[index], 1.0)] if index in names.leaning else []
+    rises = {command: offered.reach(problem.commands[command].least_elevation_deg).rise_s for command in placed}
+    for rise_s in sorted({-math.inf, offered.reaches[0].rise_s, *rises.values()}):
+        rooms = [
+            min(option.end_s - terms.close_s, offered.peak_s) - max(option.start_s + terms.acquire_s, rise_s)
+            for option in offered.options
+        ]
+        inside = [command for command in placed if rises[command] >= rise_s]
+        more = leaning if rise_s <= offered.reaches[0].rise_s else []
+        _side(problem, model, names, index, "left", rooms, {c: placed[c] for c in inside}, more)
 
 
 def _right(problem: Problem, model: Model, names: Variables, index: int) -> None:
     """The downlink after the peak and commands after it share the seconds right of the peak."""
     offered, terms = problem.passes[index], problem.terms
-
-    def room(option: Option, fall_s: int) -> float:
-        begin = max(option.start_s + terms.acquire_s, offered.peak_s)
-        return max(0.0, float(min(option.end_s - terms.close_s, fall_s) - begin))
-
-    _side(problem, model, names, index, "right", names.up_right, room, lambda reach: reach[1])
+    placed = {command: column for (command, where), column in names.up_right.items() if where == index}
+    either = {command: column for (command, where), column in names.up_either.items() if where == index}
+    leaning = [(names.leaning[index], -1.0)] if index in names.leaning else []
+    leaning += [(column, float(problem.commands[command].seconds)) for command, column in either.items()]
+    falls = {command: offered.reach(problem.commands[command].least_elevation_deg).fall_s for command in placed}
+    for fall_s in sorted({math.inf, offered.reaches[0].fall_s, *falls.values()}):
+        rooms = [
+            min(option.end_s - terms.close_s, fall_s) - max(option.start_s + terms.acquire_s, offered.peak_s)
+            for option in offered.options
+        ]
+        inside = [command for command in placed if falls[command] <= fall_s]
+        more = leaning if fall_s >= offered.reaches[0].fall_s else []
+        _side(problem, model, names, index, "right", rooms, {c: placed[c] for c in inside}, more)
+    if index in names.leaning:
+        seconds = [(column, -float(problem.commands[command].seconds)) for command, column in either.items()]
+        model.row([(names.leaning[index], 1.0), *seconds], upper=0.0)
 
 
 def _side(
@@ -161,39 +181,19 @@ def _side(
     model: Model,
     names: Variables,
     index: int,
-    side: str,
-    uplinks: dict[tuple[int, int], int],
-    room: Callable[[Option, int], float],
-    edge: Callable[[tuple[int, int]], int],
+    side: Side,
+    rooms: Sequence[float],
+    placed: Mapping[int, int],
+    leaning: Sequence[Term],
 ) -> None:
-    """Add the rows of one side: all seconds in the option, and those of high commands in their reach."""
+    """Add one row of one side: commands and downlink fit the room that the used option leaves."""
     offered = problem.passes[index]
     sent = [
-        (column, part)
+        (column, 1.0)
         for part, column in zip(offered.slices, names.t[index], strict=True)
         if part.side == side
     ]
-    placed = {command: column for (command, where), column in uplinks.items() if where == index}
-    wide = offered.options[0].start_s - 86_400 if side == "left" else offered.options[0].end_s + 86_400
-    limits = {wide: list(placed)}
-    for command in placed:
-        reach = offered.reach(problem.commands[command].least_elevation_deg)
-        limits.setdefault(edge((reach.rise_s, reach.fall_s)), []).append(command)
-    for limit_s, group in sorted(limits.items()):
-        inner = {
-            command
-            for other_s, members in limits.items()
-            if other_s != wide and (other_s >= limit_s if side == "left" else other_s <= limit_s)
-            for command in members
-        }
-        counted = set(group) if limit_s == wide else inner
-        if not sent and not counted:
-            continue
-        terms = [(column, 1.0) for column, _ in sent]
-        terms += [(placed[command], float(problem.commands[command].seconds)) for command in sorted(counted)]
-        terms += [
-            (chosen, -room(option, limit_s))
-            for option, chosen in zip(offered.options, names.x[index], strict=True)
-        ]
-        model.row(terms, upper=0.0)
-
+    sending = [(column, float(problem.commands[command].seconds)) for command, column in placed.items()]
+    room = [(column, -max(0.0, float(r))) for column, r in zip(names.x[index], rooms, strict=True)]
+    if sent or sending or leaning:
+        model.row([*sent, *sending, *leaning, *room], upper=0.0)

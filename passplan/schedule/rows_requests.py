@@ -55,18 +55,17 @@ def _ladder(
     """
     gone = model.column(0.0, 0.0)
     for index in own:
-        left_1, left_2 = names.up_left.get((first, index)), names.up_left.get((second, index))
-        right_1, right_2 = names.up_right.get((first, index)), names.up_right.get((second, index))
-        if left_1 is left_2 is right_1 is right_2 is None:
-            continue
         if together:
-            gone = _rung(model, gone, left_1, left_2)
-            gone = _rung(model, gone, right_1, right_2)
+            for side in (names.up_left, names.up_right):
+                gone = _rung(model, gone, side.get((first, index)), side.get((second, index)))
             continue
-        taken: list[Term] = [(column, 1.0) for column in (left_2, right_2) if column is not None]
+        ours, theirs = names.up(second, index), names.up(first, index)
+        if not ours and not theirs:
+            continue
+        taken: list[Term] = [(column, 1.0) for column in ours]
         if taken:
             model.row([*taken, (gone, -1.0)], upper=0.0)
-        added: list[Term] = [(column, -1.0) for column in (left_1, right_1) if column is not None]
+        added: list[Term] = [(column, -1.0) for column in theirs]
         after = model.column(0.0, 1.0)
         model.row([(after, 1.0), (gone, -1.0), *added, *taken], 0.0, 0.0)
         gone = after

@@ -94,7 +94,7 @@ def _session_bytes(
 ) -> list[tuple[str, int, int, float]]:
     """Return (kind, day made, column, kB) of the sessions that may end in (begin_s, end_s]."""
     return [
-        (kind, int(start // DAY_S), column, byte * _KB)
+        (kind, int((start + session.length_s) // DAY_S), column, byte * _KB)
         for which, session in enumerate(problem.sessions)
         if session.satellite == number
         for start, column in zip(session.starts_s, names.run[which], strict=True)

@@ -2,8 +2,8 @@
 
 import math
 import time
-from collections.abc import Callable
-from dataclasses import dataclass, field
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
@@ -21,6 +21,7 @@ from passplan.schedule.steps import (
     contacts_step,
     fairness_rows,
     first_must,
+    nothing,
     must_steps,
     offered_min,
     people_step,
@@ -43,6 +44,7 @@ class Solved:
         best: values of the worth step, nothing given.
         steps: reports in order, `kept` filled in.
         seconds: solver time by step name.
+        interrupted: Ctrl-C ended the chain early.
     """
 
     names: Variables
@@ -50,11 +52,18 @@ class Solved:
     best: Values
     steps: tuple[StepReport, ...]
     seconds: dict[str, float]
+    interrupted: bool
 
 
 @dataclass(slots=True, eq=False)
 class Chain:
-    """A model that grows a row with each step held."""
+    """A model that grows a row with each step held.
+
+    Attributes:
+        ends: moment (s, performance counter) at which the time is up.
+        values: of the last solution, which fits every row so far; best: of the worth step.
+        done: (step, value, bound, proven) of the steps reported.
+    """
 
     problem: Problem
     model: Model
@@ -63,42 +72,71 @@ class Chain:
     solver: Solver
     tell: Tell
     values: Values | None = None
+    best: Values | None = None
     done: list[tuple[Step, float, float, bool]] = field(default_factory=list)
     seconds: dict[str, float] = field(default_factory=dict)
 
-    def take(self, step: Step, *, report: bool = True, share: float = 1.0) -> bool:
-        """Solve one step, keep its value for the later ones, and return whether a solution was found.
+    def take(self, step: Step, *, report: bool = True, share: float = 1.0, loose: Sequence[int] = ()) -> bool:
+        """Solve one step, keep its value for the later ones, and return whether there is a solution.
 
         Args:
             step: what to optimise.
             report: list it among the plan's steps.
             share: of the time left, the most this step may use.
+            loose: 0/1 columns that may first be fractions; see `_loosely`.
         """
-        left = max(0.0, self.ends - time.perf_counter())
-        answer = self.model.solve(
+        seconds = max(0.0, self.ends - time.perf_counter()) * share
+        answer = self._loosely(step, seconds, loose) if loose else None
+        if answer is None:
+            answer = self._solve(self.model, step, seconds)
+        self.tell(f"{step.name}: {answer.value:.6g} {step.unit}, bound {answer.bound:.6g}, {answer.seconds:.1f} s")
+        if answer.found:
+            self.values = answer.values
+        elif self.values is None or answer.status == "infeasible":
+            return False
+        value = step.value(self.values)
+        bound = _bound(step, answer, value)
+        if report:
+            self.done.append((step, value, bound, abs(bound - value) <= _GAP * max(1.0, abs(value))))
+        step.hold(self.model, value, slack=max(1e-6, 1e-7 * abs(value)))
+        return True
+
+    def _solve(self, model: Model, step: Step, seconds: float) -> Answer:
+        """Solve one step on a model, from the last solution on."""
+        answer = model.solve(
             step.objective,
             maximise=step.maximise,
-            seconds=left * share,
+            seconds=seconds,
             solver=self.solver,
             gap=_GAP / 2.0,
             whole=step.whole,
             hint=self.values,
         )
         self.seconds[step.name] = self.seconds.get(step.name, 0.0) + answer.seconds
-        self.tell(f"{step.name}: {answer.value:.6g} (bound {answer.bound:.6g}) {answer.seconds:.2f} s {answer.status}")
-        if answer.found:
-            self.values = answer.values
-            value = step.value(answer.values)
-        elif self.values is not None and answer.status == "unknown":
-            value = step.value(self.values)
-        else:
-            return False
-        bound = _bound(step, answer, value)
-        if report:
-            proven = abs(bound - value) <= _GAP * max(1.0, abs(value))
-            self.done.append((step, value, bound, proven))
-        step.hold(self.model, value, slack=max(1e-6, 1e-7 * abs(value)))
-        return True
+        return answer
+
+    def _loosely(self, step: Step, seconds: float, loose: Sequence[int]) -> Answer | None:
+        """Solve a step with some 0/1 columns as fractions, then make those whole with the rest held.
+
+        Fewer 0/1 columns prove the bound in a fraction of the time, and that bound holds for
+        the whole model too. Where the fractions can be made whole without touching the
+        objective, as commands mostly can, the answer is the whole model's; else None.
+        """
+        light = self.model.copy()
+        for column in loose:
+            light.integer[column] = False
+        answer = self._solve(light, step, seconds)
+        if not answer.found:
+            return None
+        held = self.model.copy()
+        open_ = set(loose)
+        for column in self.names.integers():
+            if column not in open_:
+                held.fix(column, round(float(answer.values[column])))
+        whole = self._solve(held, worth_step(self.problem, self.names), seconds)
+        if not whole.found or abs(step.value(whole.values) - answer.value) > 1e-6 * max(1.0, abs(answer.value)):
+            return None
+        return replace(answer, values=whole.values)
 
 
 def _bound(step: Step, answer: Answer, value: float) -> float:
@@ -134,16 +172,16 @@ def solve(
     """
     model, names = build(problem)
     chain = Chain(problem, model, names, time.perf_counter() + time_limit_s, solver, tell)
-    _before_worth(chain)
-    chain.take(worth_step(problem, names), share=0.6)
-    best = chain.values
-    for step in burden_steps(problem, names):
-        chain.take(step, share=0.7)
-    again = worth_step(problem, names)
-    chain.take(Step("worth again", "kB", again.objective, maximise=True), share=0.7)
-    chain.take(contacts_step(problem, names), report=False, share=0.7)
-    _share_out(chain)
+    interrupted = False
+    if problem.passes or problem.sessions:
+        try:
+            _walk(chain)
+        except KeyboardInterrupt:
+            interrupted = True
+    if chain.values is None:
+        chain.values = np.zeros(len(model.lower))
     values = _polish(chain)
+    best = values if chain.best is None else chain.best
     reports = tuple(
         StepReport(
             name=step.name,
@@ -152,11 +190,27 @@ def solve(
             bound=bound,
             give=step.give(value),
             kept=step.value(values),
-            proven=proven,
+            proven=proven and not interrupted,
         )
         for step, value, bound, proven in chain.done
     )
-    return Solved(names, values, best, reports, chain.seconds)
+    return Solved(names, values, best, reports, chain.seconds, interrupted)
+
+
+def _walk(chain: Chain) -> None:
+    """Take every step of the chain."""
+    problem, names = chain.problem, chain.names
+    _before_worth(chain)
+    chain.take(worth_step(problem, names), share=0.6)
+    chain.best = chain.values
+    uplinks = names.uplinks()
+    for step in burden_steps(problem, names):
+        chain.take(step, share=0.7, loose=uplinks)
+    chain.take(replace(worth_step(problem, names), name="worth again", give=nothing), share=0.7)
+    for column in uplinks:
+        chain.model.fix(column, round(float(chain.values[column])))
+    chain.take(contacts_step(problem, names), report=False, share=0.7)
+    _share_out(chain)
 
 
 def _before_worth(chain: Chain) -> None:
@@ -189,7 +243,6 @@ def _share_out(chain: Chain) -> None:
     """With the contacts fixed, share the duties fairly, twice, then settle who among equals."""
     problem, names, values = chain.problem, chain.names, chain.values
     held = [column for options in names.x for column in options]
-    held += [*names.up_left.values(), *names.up_right.values()]
     held += [column for starts in names.run for column in starts]
     for column in held:
         chain.model.fix(column, round(float(values[column])))

@@ -1,5 +1,6 @@
 """The objectives in their order, each a solve of its own, and what each may give away."""
 
+import math
 from collections.abc import Callable
 from dataclasses import dataclass
 
@@ -10,6 +11,11 @@ from passplan.schedule.rows_requests import placed
 from passplan.schedule.variables import Variables, weight_of
 
 Objective = dict[int, float]
+
+
+def nothing(_: float) -> float:
+    """Give nothing away."""
+    return 0.0
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -29,7 +35,7 @@ class Step:
     unit: str
     objective: Objective
     maximise: bool
-    give: Callable[[float], float] = lambda _: 0.0
+    give: Callable[[float], float] = nothing
     whole: bool = False
     ideal: float | None = None
 
@@ -47,9 +53,9 @@ class Step:
         """
         terms = sorted(self.objective.items())
         if self.maximise:
-            model.row(terms, lower=value - self.give(value) - slack)
+            model.long_row(terms, lower=value - self.give(value) - slack)
         else:
-            model.row(terms, upper=value + self.give(value) + slack)
+            model.long_row(terms, upper=value + self.give(value) + slack)
 
 
 def must_steps(problem: Problem, names: Variables) -> list[Step]:
@@ -148,10 +154,12 @@ def contacts_step(problem: Problem, names: Variables) -> Step:
     return Step("fewest contacts", "contacts", objective, maximise=False)
 
 
-def offered_min(problem: Problem) -> list[float]:
-    """Return for each operator the duty minutes of all passes offered in their hours."""
+def offered_min(problem: Problem, until_s: float = math.inf) -> list[float]:
+    """Return for each operator the duty minutes of all passes offered in their hours before a moment."""
     total = [0.0] * len(problem.operators)
     for offered in problem.passes:
+        if offered.sight.aos_s >= until_s:
+            continue
         for duty in offered.duties:
             total[duty.operator] += duty.load_min
     return total

@@ -25,6 +25,8 @@ class Variables:
         y: [i][operator] the operator runs the contact in the pass.
         second: [i] a second person is there, where a command may ask for one.
         up_left, up_right: [c, i] the command goes up before / after the downlink.
+        up_either: [c, i] it goes up on a side that the lay-out chooses.
+        leaning: [i] seconds of those that stand before the downlink.
         t: [i][j] seconds the satellite transmits in the slice.
         v: [i][class] kilobytes brought down.
         run: [session][q] the session starts there.
@@ -37,6 +39,8 @@ class Variables:
     second: dict[int, int] = field(default_factory=dict)
     up_left: dict[tuple[int, int], int] = field(default_factory=dict)
     up_right: dict[tuple[int, int], int] = field(default_factory=dict)
+    up_either: dict[tuple[int, int], int] = field(default_factory=dict)
+    leaning: dict[int, int] = field(default_factory=dict)
     t: list[list[int]] = field(default_factory=list)
     v: list[dict[DataClass, int]] = field(default_factory=list)
     run: list[list[int]] = field(default_factory=list)
@@ -44,8 +48,13 @@ class Variables:
     short: list[int] = field(default_factory=list)
 
     def up(self, command: int, index: int) -> list[int]:
-        """Return the columns of one command in one pass, left and right."""
-        return [side[command, index] for side in (self.up_left, self.up_right) if (command, index) in side]
+        """Return the columns of one command in one pass, on whatever side."""
+        sides = (self.up_left, self.up_right, self.up_either)
+        return [side[command, index] for side in sides if (command, index) in side]
+
+    def uplinks(self) -> list[int]:
+        """Return every column that sends a command up."""
+        return [*self.up_left.values(), *self.up_right.values(), *self.up_either.values()]
 
     def integers(self) -> Iterable[int]:
         """Return every 0/1 column."""
@@ -53,8 +62,7 @@ class Variables:
             yield from row
         for people in self.y:
             yield from people.values()
-        yield from self.up_left.values()
-        yield from self.up_right.values()
+        yield from self.uplinks()
         for starts in self.run:
             yield from starts
 
@@ -76,6 +84,8 @@ def variables(problem: Problem, model: Model) -> Variables:
             names.second[index] = model.column(0.0, 1.0)
         for placing in offered.placings:
             _uplinks(problem, model, names, index, placing.command)
+        if any(where == index for _, where in names.up_either):
+            names.leaning[index] = model.column()
         names.t.append([model.column(0.0, part.end_s - part.start_s) for part in offered.slices])
         classes = data_classes(problem.crafts[offered.satellite], offered)
         names.v.append({data: model.column() for data in classes})
@@ -86,15 +96,30 @@ def variables(problem: Problem, model: Model) -> Variables:
 
 
 def _uplinks(problem: Problem, model: Model, names: Variables, index: int, command: int) -> None:
-    """Add the columns of one command in one pass, where its seconds fit beside the peak."""
+    """Add the columns of one command in one pass, where its seconds fit beside the peak.
+
+    A command's side matters to the model only where its own least elevation or a chain
+    inside one window asks for it; otherwise half the columns do, and the lay-out chooses.
+    """
     offered, wanted = problem.passes[index], problem.commands[command]
     reach = offered.reach(wanted.least_elevation_deg)
     first = max(min(option.start_s for option in offered.options) + problem.terms.acquire_s, reach.rise_s)
     last = min(max(option.end_s for option in offered.options) - problem.terms.close_s, reach.fall_s)
-    if min(offered.peak_s, last) - first >= wanted.seconds:
+    left = min(offered.peak_s, last) - first >= wanted.seconds
+    right = last - max(offered.peak_s, first) >= wanted.seconds
+    if left and right and wanted.least_elevation_deg is None and not _chained(problem, command):
+        names.up_either[command, index] = model.binary()
+        return
+    if left:
         names.up_left[command, index] = model.binary()
-    if last - max(offered.peak_s, first) >= wanted.seconds:
+    if right:
         names.up_right[command, index] = model.binary()
+
+
+def _chained(problem: Problem, command: int) -> bool:
+    """Return whether a command may share a window with one it is ordered with."""
+    links = [(number, *link) for number, wanted in enumerate(problem.commands) for link in wanted.after]
+    return any(command in pair and order != "after_contact" for *pair, order in links)
 
 
 def data_classes(craft: Craft, offered: OfferedPass) -> list[DataClass]:

@@ -1,0 +1,1 @@
+"""The optimisation model: variables, rows, steps, solve, lay-out, why not."""
