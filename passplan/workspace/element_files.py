@@ -111,7 +111,7 @@ def read_file(path: Path, source: str | None = None) -> list[ElementSet]:
         InputError: it cannot be read, or what `read_elements` raises.
     """
     label = printable(str(path) if source is None else source)
-    return read_elements(_content(path, label), label)
+    return read_elements(content(path, label), label)
 
 
 def read_folder(path: Path) -> list[ElementSet]:
@@ -157,7 +157,7 @@ def element_paths(path: Path) -> list[Path]:
     ]
 
 
-def _content(path: Path, label: str) -> bytes:
+def content(path: Path, label: str) -> bytes:
     """Return the bytes of a plain file of a size people may mean.
 
     Raises:

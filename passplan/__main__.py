@@ -1,0 +1,5 @@
+"""`python -m passplan`."""
+
+from passplan.cli import main
+
+main()
