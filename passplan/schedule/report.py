@@ -1,5 +1,6 @@
 """An outcome written down as the `Plan` people get."""
 
+import math
 from collections.abc import Callable, Mapping, Sequence
 from datetime import datetime
 
@@ -86,13 +87,15 @@ def draw_up(
 
 def _worth(solved: Solved, plan: Outcome, best: Outcome) -> WorthReport:
     """Return bound, best possible and the plan's worth."""
-    bound = next(step.bound for step in solved.steps if step.name == "worth")
+    # Ctrl-C may come before the worth step; with nothing to choose from there is none, and nothing to gain.
+    unknown = math.inf if plan.problem.passes or plan.problem.sessions else 0.0
+    bound = next((step.bound for step in solved.steps if step.name == "worth"), unknown)
     best_laid_out = max(best.worth(), plan.worth())
     return WorthReport(
         bound=bound,
         best_laid_out=best_laid_out,
         laid_out=plan.worth(),
-        gap_fraction=max(0.0, (bound - best_laid_out) / bound) if bound > 0.0 else 0.0,
+        gap_fraction=max(0.0, 1.0 - best_laid_out / bound) if bound > 0.0 else 0.0,
         week_laid_out=plan.worth(week_only=True),
     )
 
@@ -274,11 +277,13 @@ def _shares(plan: Outcome) -> tuple[Share, ...]:
     shares = []
     for who, person in enumerate(problem.operators):
         mine = [laid for laid in week if who in laid.operators]
-        duties = [
-            duty for laid in mine for duty in problem.passes[laid.index].duties if duty.operator == who
-        ]
+        duties = [duty for laid in mine for duty in problem.passes[laid.index].duties if duty.operator == who]
         sittings = sum(
-            not any(who in used[before].operators for before in sitting_before(problem, laid.index) if before in used)
+            not any(
+                who in used[before].operators
+                for before in sitting_before(problem, laid.index)
+                if before in used
+            )
             for laid in mine
         )
         shares.append(
@@ -308,4 +313,3 @@ def _silence(plan: Outcome, number: int, contacts: Sequence[Contact]) -> Silence
     ]
     length, begin, end = max(gaps, key=lambda gap: (gap[0], -gap[1]))
     return Silence(satellite=name, from_s=begin, to_s=begin + max(0.0, length) if length > 0 else end)
-

@@ -57,8 +57,9 @@ def in_shadow(satellite_km: Floats, sun_km_: Floats) -> Flags:
 
 
 def _dark(body: EarthSatellite, horizon: Horizon, seconds: Floats) -> Flags:
-    """Return whether the satellite is in shadow at each second of the week."""
+    """Return whether the satellite is in shadow at each second of the week; never once SGP4 gives up."""
     whole, fraction = horizon.julian(0.0)
     days = fraction + seconds / DAY_S
-    _, place_km, _ = body.model.sgp4_array(np.full(len(days), whole), days)
+    errors, place_km, _ = body.model.sgp4_array(np.full(len(days), whole), days)
+    place_km[errors != 0] = np.nan  # after a decay it still gives places, under the ground
     return in_shadow(place_km, sun_km(whole - _J2000_JD + days))
