@@ -5,6 +5,7 @@ that cannot be read or written; 3 nothing verified; 4 workspace held by another;
 or a server failed; 70 a fault of passplan itself (EX_SOFTWARE of sysexits.h); 130 interrupted.
 """
 
+import os
 import signal
 import sys
 import traceback
@@ -58,7 +59,10 @@ def main() -> None:
     """Run passplan with the arguments of the process and end it."""
     open_streams()
     take_stdout()
-    sys.exit(run(sys.argv[1:]))
+    code = run(sys.argv[1:])
+    if code == INTERRUPTED:  # a solver that is still at work in its thread would crash an orderly end
+        os._exit(code)
+    sys.exit(code)
 
 
 def run(arguments: Sequence[str]) -> int:

@@ -97,8 +97,8 @@ def warn_of_ages(desk: Desk, mission: Mission, farthest_days: Mapping[str, float
     """
     for name, days in farthest_days.items():
         if days > mission.planning.warn_age_days:
-            told = f"its elements are {days:.1f} days from the farthest of these moments"
-            desk.warn(f"{safe(name)}: {told}; add newer ones with: passplan elements add FILE")
+            told = f"its elements are {days:.1f} days from the last of these moments"
+            desk.warn(f"{safe(name)}: {told}; look again with newer ones before then.")
 
 
 def refuse_age(inputs: Inputs) -> None:

@@ -51,15 +51,21 @@ def plan(desk: Desk, asked: Asked) -> Answer:
         store = PlanStore(folder=desk.folder)
         latest = store.latest(inputs.horizon.week)
         made = _planned(desk, inputs, asked, store, (latest or 0) + 1)
-        made, told = _stored(desk, store, made, latest)
-    ages = {used.satellite: used.farthest_days for used in made.elements}
+        edition, told = _stored(desk, store, made, latest)
+        path = store.path(inputs.horizon.week, edition)
+        stored = store.read(inputs.horizon.week, edition)  # what is shown now is what `show` shows later
+    ages = {used.satellite: used.farthest_days for used in stored.elements}
     warn_of_ages(desk, inputs.mission, ages)
-    shown = to_json(made).encode() if asked.as_json else week_text(made, inputs.mission, desk.width)
-    return Answer(shown=shown, exit_code=0 if made.good else _NOT_GOOD, afterwards=told)
+    shown = path.read_bytes() if asked.as_json else week_text(stored, inputs.mission, desk.width)
+    return Answer(shown=shown, exit_code=0 if stored.good else _NOT_GOOD, afterwards=told)
 
 
 def _planned(desk: Desk, inputs: Inputs, asked: Asked, store: PlanStore, edition: int) -> Plan:
-    """Return the verified plan, the best so far where Ctrl-C ended the search."""
+    """Return the verified plan, the best so far where Ctrl-C ended the search.
+
+    Raises:
+        KeyboardInterrupt: Ctrl-C came before there was a contact to keep.
+    """
     try:
         return plan_week(
             inputs.mission,
@@ -73,22 +79,21 @@ def _planned(desk: Desk, inputs: Inputs, asked: Asked, store: PlanStore, edition
             tell=desk.tell,
         )
     except PlanInterrupted as interrupted:
-        desk.warn("Interrupted: this is the best plan so far, verified.")
+        if not interrupted.plan.contacts:
+            raise
+        desk.warn("Interrupted. The best plan so far is verified and kept.")
         return interrupted.plan
 
 
-def _stored(desk: Desk, store: PlanStore, made: Plan, latest: int | None) -> tuple[Plan, tuple[str, ...]]:
-    """Store a plan unless the last edition is the same but for its number; return the one in force.
-
-    The second value is what to say of it.
-    """
+def _stored(desk: Desk, store: PlanStore, made: Plan, latest: int | None) -> tuple[int, tuple[str, ...]]:
+    """Store a plan unless the last edition says the same; return the edition in force and what to say."""
     week = made.horizon.week
     if latest is not None:
-        same = replace(made, edition=latest)
-        if store.path(week, latest).read_bytes() == to_json(same).encode():
-            return same, (f"Edition {latest} of week {week} stands: nothing has changed.",)
+        same = to_json(replace(made, edition=latest)).encode()
+        if store.path(week, latest).read_bytes() == same:
+            return latest, (f"Edition {latest} of week {week} stands: nothing has changed.",)
     path = store.write(made, desk.clock())
-    return made, (f"Stored as {path}.", "Calendars for phones: passplan calendar")
+    return made.edition, (f"Stored as {path}.", "Calendars for phones: passplan calendar")
 
 
 def _warn(desk: Desk, inputs: Inputs, *, old_elements: bool) -> None:

@@ -1,5 +1,6 @@
 """What `check` found: mistakes, doubts, and the values nobody wrote that are assumed."""
 
+import textwrap
 from collections.abc import Iterable, Sequence
 from itertools import groupby
 
@@ -8,6 +9,9 @@ from rich.text import Text
 from passplan.domain.errors import Mistake
 from passplan.render.typeset import BROKEN, STRONG, THIN, Column, Page
 from passplan.render.words import count, safe
+
+_LEAST_KEY = 30
+_SENTENCE = 190  # what `safe` shows whole
 
 
 def check_text(
@@ -39,7 +43,7 @@ def check_text(
         page.heading(f"Assumed in {safe(file)}")
         kept = list(rows)
         keys, values = (tuple(safe(row[index]) for row in kept) for index in (1, 2))
-        page.table([Column(heading="", cells=keys), Column(heading="", cells=values, least=10)])
+        page.table([Column(heading="", cells=keys, least=_LEAST_KEY), Column(heading="", cells=values)])
     return page.text()
 
 
@@ -48,4 +52,12 @@ def _add_mistake(page: Page, mistake: Mistake) -> None:
     where = safe(mistake.key)
     shown = f"{safe(mistake.text)!r}" if mistake.text else ""
     page.sentences(": ".join(filter(None, (where, shown))) or "the file", indent=2, style=STRONG)
-    page.sentences(safe(mistake.allowed), indent=4)
+    told, *shown = mistake.allowed.split("\n")
+    page.sentences(*_whole(told), indent=4)
+    for line in shown:  # the line of a file and a caret under it: the columns count
+        page.line("".join(char if char.isprintable() else "?" for char in line))
+
+
+def _whole(sentence: str) -> list[str]:
+    """Return a long sentence in parts that are short enough to be shown whole."""
+    return [safe(part) for part in textwrap.wrap(sentence, _SENTENCE)]
