@@ -25,6 +25,8 @@ from passplan.verify import check
 
 Tell = Callable[[str], None]
 _REPAIRS = 3
+_REPAIR_SHARE = 0.1  # of the time limit, for each repair once the time is up
+_HURRY_S = 10.0  # after Ctrl-C, for mending the plan that is there
 
 
 class PlanInterrupted(KeyboardInterrupt):  # noqa: N818  (it is no error: the plan in it is verified)
@@ -68,16 +70,26 @@ def plan_week(
         tell: called with a line of progress.
 
     Raises:
-        NothingVerifiedError: no plan came through the second reading.
+        NothingVerifiedError: none was found in the time, or none came through the second reading.
         PlanInterrupted: Ctrl-C; carries the best plan, verified.
+        KeyboardInterrupt: Ctrl-C before there was one.
     """
     tell("looking for passes")
     sky, ways = sky_of(mission, horizon, elements)
     tell(f"{len(sky.passes)} passes above the masks; weighing links, charge and people")
     problem = join(mission, horizon, sky, ways)
     findings: tuple[Finding, ...] = ()
+    left_s, interrupted = time_limit_s, False
     for attempt in range(_REPAIRS + 2):
-        solved = solve(problem, time_limit_s=time_limit_s, tell=tell)
+        solved = solve(problem, time_limit_s=left_s, tell=tell)
+        interrupted |= solved.interrupted
+        left_s = max(left_s - sum(solved.seconds.values()), _REPAIR_SHARE * time_limit_s)
+        left_s = min(left_s, _HURRY_S) if interrupted else left_s
+        if not _found(problem, solved):
+            if interrupted:
+                raise KeyboardInterrupt
+            told = f"no plan was found in {time_limit_s:g} s, nothing is stored; allow more with --time-limit"
+            raise NothingVerifiedError(told)
         made = outcome(problem, solved.names, solved.values)
         best = outcome(problem, solved.names, solved.best)
         tell("writing the plan down and reading it a second time")
@@ -97,8 +109,8 @@ def plan_week(
         verdict = check(mission, elements, plan)
         if verdict.ok:
             plan = replace(plan, verdict=verdict, notices=plan.notices + _musts(plan))
-            if solved.interrupted:
-                raise PlanInterrupted(plan)
+            if interrupted:
+                raise PlanInterrupted(replace(plan, proven=False))
             return plan
         findings = verdict.findings
         for finding in findings:
@@ -107,6 +119,12 @@ def plan_week(
         problem = tightened(problem, findings, passes, drop=attempt >= _REPAIRS - 1)
     told = "\n".join(f"  {finding.where}: {finding.rule.value} {finding.sentence}" for finding in findings[:8])
     raise NothingVerifiedError(f"no plan came through the second reading; what it found last:\n{told}")
+
+
+def _found(problem: Problem, solved: Solved) -> bool:
+    """Return whether there is a plan to speak of: the worth step has one, or nothing is to be chosen."""
+    choice = problem.passes or problem.sessions
+    return not choice or any(step.name == "worth" for step in solved.steps)
 
 
 def _unplaced(problem: Problem, made: Outcome) -> list[int]:

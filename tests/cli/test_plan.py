@@ -3,13 +3,15 @@
 import json
 import os
 import re
+from dataclasses import replace
 from pathlib import Path
-from zoneinfo import ZoneInfo
+from typing import Any
 
 import pytest
 
 from passplan.domain.errors import NothingVerifiedError
 from passplan.errands import planning
+from passplan.schedule.solve import Solved, solve
 from tests.cli.conftest import Spoil, Type
 
 pytestmark = pytest.mark.usefixtures("week")
@@ -194,6 +196,28 @@ def test_nothing_verified_writes_nothing(typed: Type, week: Path, monkeypatch: p
     assert list((week / "plans").iterdir()) == []
 
 
+def test_no_plan_in_the_time_writes_nothing(typed: Type, week: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def out_of_time(*arguments: Any, **more: Any) -> Solved:
+        return replace(solve(*arguments, **more), steps=())
+
+    monkeypatch.setattr("passplan.week.solve", out_of_time)
+    code, out, err = typed("plan", "--time-limit", "7")
+    assert (code, out) == (3, "")
+    assert err == "no plan was found in 7 s, nothing is stored; allow more with --time-limit\n"
+    assert list((week / "plans").iterdir()) == []
+
+
+def test_a_plan_that_is_not_proven_is_good_all_the_same(typed: Type, monkeypatch: pytest.MonkeyPatch) -> None:
+    def out_of_time(*arguments: Any, **more: Any) -> Solved:
+        solved = solve(*arguments, **more)
+        return replace(solved, steps=tuple(replace(step, proven=False) for step in solved.steps))
+
+    monkeypatch.setattr("passplan.week.solve", out_of_time)
+    code, out, _ = typed("plan")
+    assert code == 0
+    assert out.startswith("Week 2026-W50, edition 1, Finch-1: verified, but time ran out before the proof\n")
+
+
 def test_progress_is_silent_through_a_pipe_unless_asked_for(typed: Type) -> None:
     assert "looking for passes" not in typed("plan").err
     assert "looking for passes\n" in typed("plan", "--progress").err
@@ -202,7 +226,3 @@ def test_progress_is_silent_through_a_pipe_unless_asked_for(typed: Type) -> None
 def test_long_work_tells_what_it_did_so_far(typed: Type, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr("passplan.voice.LONG_S", -1.0)
     assert "reading the workspace\nlooking for passes\n" in typed("plan").err
-
-
-def test_the_zones_of_the_week_are_known_here() -> None:
-    assert ZoneInfo("Pacific/Auckland").key == "Pacific/Auckland"
