@@ -3,7 +3,8 @@
 import pytest
 
 from passplan.domain.problem import Problem
-from passplan.schedule.layout import LaidOut, lay_out, started
+from passplan.schedule.layout import LaidOut, started
+from passplan.schedule.outcome import outcome
 from passplan.schedule.solve import Solved, solve
 from tests.enumerator import Enumerator
 from tests.judged_plan import judge
@@ -25,7 +26,7 @@ def worth(problem: Problem, *, in_pieces: bool = False) -> float:
     assert in_pieces or found.worth == pytest.approx(value, abs=0.5)
     assert bound == pytest.approx(value, rel=2e-4, abs=1e-3)
     for values in (solved.best, solved.values):
-        plan = judge(trier, lay_out(problem, solved.names, values), started(problem, solved.names, values))
+        plan = judge(trier, list(outcome(problem, solved.names, values).contacts), started(problem, solved.names, values))
         assert not plan.faults
         assert plan.worth == pytest.approx(value, abs=0.5)
     return value
@@ -39,7 +40,7 @@ def step(solved: Solved, name: str) -> tuple[float, float]:
 def contacts(problem: Problem) -> list[LaidOut]:
     """Return the laid-out contacts of the plan."""
     solved = solve(problem)
-    return lay_out(problem, solved.names, solved.values)
+    return list(outcome(problem, solved.names, solved.values).contacts)
 
 
 def sent(problem: Problem) -> dict[int, int]:

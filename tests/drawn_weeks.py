@@ -45,7 +45,7 @@ def drawn_week(seed: int) -> Problem:
         TERMS,
         close_s=10 * draws.below(2),
         give_worth_fraction=0.03 if draws.chance(0.5) else 0.0,
-        give_night_min=5.0 * draws.below(2),
+        give_night_min=15.0 * draws.below(2),
     )
     passes = tuple(_passes(draws, len(people), len(commands)))
     sessions = (_session(draws, passes),) if draws.chance(0.4) else ()
@@ -148,7 +148,7 @@ def _pass(
             for p in range(people)
             if p == 0 or draws.chance(0.8)
         },
-        night_min=float(draws.below(3)),
+        night_min=15.0 * draws.below(3),
     )
 
 

@@ -1,5 +1,6 @@
 """Every way to staff a choice of contacts, with the rules of people checked one by one."""
 
+import math
 from collections import Counter
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
@@ -17,7 +18,7 @@ class Burden:
     """What one way to staff costs people."""
 
     sittings: int
-    night_min: float
+    night_quarters: float
 
 
 def burdens(problem: Problem, used: Used, pairs: frozenset[int]) -> list[Burden]:
@@ -49,8 +50,8 @@ def _teams(problem: Problem, index: int, number: int, size: int) -> Iterator[tup
 
 
 def burden(problem: Problem, used: Used, staff: Staff) -> Burden:
-    """Return the sittings and night minutes of one way to staff."""
-    nights = [duty_of(problem, index, who).night_min for index, _ in used for who in staff[index]]
+    """Return the sittings and night quarter hours of one way to staff."""
+    nights = [math.ceil(duty_of(problem, index, who).night_min / 15.0) for index, _ in used for who in staff[index]]
     begun = sum(begins_sitting(problem, staff, index, who) for index, _ in used for who in staff[index])
     return Burden(begun, sum(nights))
 

@@ -114,8 +114,8 @@ class Enumerator:
         if sittings is None:
             return None
         few = [one for one in able if one[0].sittings <= sittings.sittings + give_sittings]
-        nights = self._first(sorted(few, key=lambda one: one[0].night_min), best, worth)
-        return None if nights is None else Burden(sittings.sittings, nights.night_min)
+        nights = self._first(sorted(few, key=lambda one: one[0].night_quarters), best, worth)
+        return None if nights is None else Burden(sittings.sittings, nights.night_quarters)
 
     def _first(self, able: Iterable[tuple[Burden, Choice]], best: Best, worth: float) -> Burden | None:
         """Return the first burden whose choice reaches a worth."""

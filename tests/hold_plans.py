@@ -5,7 +5,8 @@ from dataclasses import dataclass
 
 from passplan.domain.plan import StepReport
 from passplan.domain.problem import Problem
-from passplan.schedule.layout import lay_out, started
+from passplan.schedule.layout import started
+from passplan.schedule.outcome import outcome
 from passplan.schedule.solve import Solved, solve
 from tests.enumerated_contacts import STEP_S
 from tests.enumerator import Best, Enumerator
@@ -77,7 +78,7 @@ def tried(problem: Problem, solved: Solved | None = None) -> Trial:
     assert surely is not None
     assert perhaps is not None
     laid = [
-        judge(trier, lay_out(problem, solved.names, values), started(problem, solved.names, values))
+        judge(trier, list(outcome(problem, solved.names, values).contacts), started(problem, solved.names, values))
         for values in (solved.best, solved.values)
     ]
     return Trial(problem, solved, trier, surely, perhaps, laid[0], laid[1])
@@ -123,10 +124,10 @@ def hold_worth(trial: Trial) -> None:
 
 
 def hold_burden(trial: Trial) -> None:
-    """Check the fewest sittings and night minutes of the plans that keep the worth within its give."""
+    """Check the fewest sittings and night quarter hours of the plans that keep the worth within its give."""
     problem, worth = trial.problem, trial.step("worth")
     step = worth_of_a_step(problem, len(problem.passes)) + worth_of_waiting(problem)
-    sittings, nights = trial.step("sittings"), trial.step("night minutes")
+    sittings, nights = trial.step("sittings"), trial.step("night duty")
     least = worth.value - worth.give
     trial.trier.slack_j = rounding_j(problem)
     surely = trial.trier.least_burden(trial.surely, least, problem.terms.give_sittings)
@@ -135,8 +136,8 @@ def hold_burden(trial: Trial) -> None:
     assert perhaps is not None
     assert sittings.value >= perhaps.sittings - 1e-6
     assert trial.plan.burden.sittings <= sittings.value + sittings.give + 1e-6
-    assert trial.plan.burden.night_min <= nights.value + nights.give + 1e-4
+    assert trial.plan.burden.night_quarters <= nights.value + nights.give + 1e-4
     if surely is not None:
         assert sittings.value <= surely.sittings + 1e-6
         if surely.sittings == perhaps.sittings:
-            assert perhaps.night_min - 1e-4 <= nights.value <= surely.night_min + 1e-4
+            assert perhaps.night_quarters - 1e-4 <= nights.value <= surely.night_quarters + 1e-4

@@ -1,10 +1,10 @@
 """From a solution to real slots in whole seconds: acquire, uplink, downlink, uplink, close."""
 
-from collections.abc import Sequence
+from collections.abc import Container, Iterable, Sequence
 from dataclasses import dataclass
 
 from passplan.domain.plan import Slot
-from passplan.domain.problem import Option, Problem
+from passplan.domain.problem import Option, Problem, Side
 from passplan.schedule.model import Values
 from passplan.schedule.variables import DataClass, Variables
 
@@ -37,14 +37,45 @@ class LaidOut:
         return self.left + self.right
 
 
-def lay_out(problem: Problem, names: Variables, values: Values) -> list[LaidOut]:
-    """Return the used passes of a solution in order of time, laid out."""
+def lay_out(
+    problem: Problem, names: Variables, values: Values, *, pieces: Container[int] = frozenset()
+) -> list[LaidOut]:
+    """Return the used passes of a solution in order of time, laid out.
+
+    Args:
+        problem: the week.
+        names, values: a solution.
+        pieces: satellites whose downlinks stand exactly where the solution has them, in
+            pieces where it must be; others are put together around the peak.
+    """
     found = []
     for index, offered in enumerate(problem.passes):
         used = [number for number, column in enumerate(names.x[index]) if values[column] > 0.5]
         if used:
-            found.append(_contact(problem, names, values, index, offered.options[used[0]]))
+            option = offered.options[used[0]]
+            found.append(_contact(problem, names, values, index, option, pieces=offered.satellite in pieces))
     return sorted(found, key=lambda laid: (laid.option.start_s, laid.index))
+
+
+def misfits(problem: Problem, names: Variables, values: Values) -> list[list[int]]:
+    """Return sets of 0/1 columns that cannot all be 1: an option and commands that no split fits whole.
+
+    The model lets a command that may stand on either side be cut in two by the peak; the
+    lay-out does not.
+    """
+    found = []
+    for index, offered in enumerate(problem.passes):
+        free = _chosen(names.up_either, values, index)
+        used = [number for number, column in enumerate(names.x[index]) if values[column] > 0.5]
+        if free and used:
+            option = offered.options[used[0]]
+            fixed = _chosen(names.up_left, values, index), _chosen(names.up_right, values, index)
+            inside = option.start_s + problem.terms.acquire_s, option.end_s - problem.terms.close_s
+            if _sides(problem, names, values, index, fixed, inside) is None:
+                chosen = [*fixed[0], *fixed[1], *free]
+                columns = [c for command in chosen for c in names.up(command, index) if values[c] > 0.5]
+                found.append([names.x[index][used[0]], *columns])
+    return found
 
 
 def started(problem: Problem, names: Variables, values: Values) -> dict[int, int]:
@@ -57,22 +88,21 @@ def started(problem: Problem, names: Variables, values: Values) -> dict[int, int
     }
 
 
-def _contact(problem: Problem, names: Variables, values: Values, index: int, option: Option) -> LaidOut:
+def _contact(
+    problem: Problem, names: Variables, values: Values, index: int, option: Option, *, pieces: bool
+) -> LaidOut:
     """Lay one contact out: commands stand as near to the downlink as they can, the downlink to the peak."""
     offered = problem.passes[index]
     begin = option.start_s + problem.terms.acquire_s
     end = option.end_s - problem.terms.close_s
-    left_end, right_begin = min(end, offered.peak_s), max(begin, offered.peak_s)
-    left = _chosen(names.up_left, values, index)
-    right = _chosen(names.up_right, values, index)
-    before, after = _sides(problem, names, values, index, (left, right), (begin, end))
-    left, right = _ordered(problem, left + before, rising=True), _ordered(problem, right + after, rising=False)
-    rooms = (max(0, left_end - begin) - _total_s(problem, left), max(0, end - right_begin) - _total_s(problem, right))
-    sent_left, sent_right = _downlink_s(problem, names, values, index, rooms)
-    slots = [Slot(kind="acquire", start_s=option.start_s, end_s=begin)]
-    slots += _uplinks(problem, left, left_end - sent_left - _total_s(problem, left))
-    slots += _downlinks([(left_end - sent_left, left_end), (right_begin, right_begin + sent_right)])
-    slots += _uplinks(problem, right, right_begin + sent_right)
+    fixed = _chosen(names.up_left, values, index), _chosen(names.up_right, values, index)
+    before, after = _sides(problem, names, values, index, fixed, (begin, end)) or ([], [])
+    left = _ordered(problem, fixed[0] + before, rising=True)
+    right = _ordered(problem, fixed[1] + after, rising=False)
+    middle = (_spread(problem, names, values, index, (begin, end), left, right) if pieces else None) or _compact(
+        problem, names, values, index, (begin, end), left, right
+    )
+    slots = [Slot(kind="acquire", start_s=option.start_s, end_s=begin), *middle]
     if end < option.end_s:
         slots.append(Slot(kind="close", start_s=end, end_s=option.end_s))
     return LaidOut(
@@ -87,6 +117,91 @@ def _contact(problem: Problem, names: Variables, values: Values, index: int, opt
     )
 
 
+def _compact(
+    problem: Problem,
+    names: Variables,
+    values: Values,
+    index: int,
+    inside: tuple[int, int],
+    left: Sequence[int],
+    right: Sequence[int],
+) -> list[Slot]:
+    """Return the slots between acquire and close with the downlink in one piece around the peak."""
+    peak = problem.passes[index].peak_s
+    left_end, right_begin = min(inside[1], peak), max(inside[0], peak)
+    rooms = _room_s(problem, index, inside, left, "left"), _room_s(problem, index, inside, right, "right")
+    sent_left, sent_right = _downlink_s(problem, names, values, index, rooms)
+    slots = _uplinks(problem, left, left_end - sent_left - _total_s(problem, left))
+    slots += _downlinks([(left_end - sent_left, left_end), (right_begin, right_begin + sent_right)])
+    return slots + _uplinks(problem, right, right_begin + sent_right)
+
+
+def _room_s(problem: Problem, index: int, inside: tuple[int, int], commands: Sequence[int], side: Side) -> int:
+    """Return the downlink seconds that the commands of one side leave, those that want to be high inside."""
+    offered = problem.passes[index]
+    begin, end = inside
+
+    def room(command: int | None) -> int:
+        reach = None if command is None else offered.reach(problem.commands[command].least_elevation_deg)
+        if side == "left":
+            return min(end, offered.peak_s) - (begin if reach is None else max(begin, reach.rise_s))
+        return (end if reach is None else min(end, reach.fall_s)) - max(begin, offered.peak_s)
+
+    rooms = {command: room(command) for command in commands}
+    left = [room(None) - _total_s(problem, commands)]
+    for command, here in rooms.items():
+        nearer = [other for other, there in rooms.items() if there <= here]
+        left.append(rooms[command] - _total_s(problem, nearer))
+    return max(0, min(left))
+
+
+def _spread(
+    problem: Problem,
+    names: Variables,
+    values: Values,
+    index: int,
+    inside: tuple[int, int],
+    left: Sequence[int],
+    right: Sequence[int],
+) -> list[Slot] | None:
+    """Return the slots with the downlink where the solution has it, or None where commands do not fit between."""
+    offered = problem.passes[index]
+    taken: list[tuple[int, int]] = []
+    for part, column in zip(offered.slices, names.t[index], strict=True):
+        low, high = max(part.start_s, inside[0]), min(part.end_s, inside[1])
+        sent = min(int(values[column] + 0.5), high - low)
+        if sent > 0:
+            taken.append((high - sent, high) if part.side == "left" else (low, low + sent))
+    slots = _downlinks(taken)
+    for commands, forward in ((left, False), (right, True)):
+        cursor = offered.peak_s
+        for command in commands if forward else reversed(commands):
+            wanted = problem.commands[command]
+            reach = offered.reach(wanted.least_elevation_deg)
+            low, high = max(inside[0], reach.rise_s), min(inside[1], reach.fall_s)
+            begin = _gap(taken, wanted.seconds, (max(low, cursor), high) if forward else (low, min(high, cursor)), forward)
+            if begin is None:
+                return None
+            taken = sorted([*taken, (begin, begin + wanted.seconds)])
+            slots.append(
+                Slot(kind="uplink", start_s=begin, end_s=begin + wanted.seconds, command=wanted.name)
+            )
+            cursor = begin + wanted.seconds if forward else begin
+    return sorted(slots, key=lambda slot: slot.start_s)
+
+
+def _gap(
+    taken: Sequence[tuple[int, int]], seconds: int, span: tuple[int, int], forward: bool
+) -> int | None:
+    """Return the start of the first (or last) gap of so many seconds in a span, None when there is none."""
+    edges = [span[0], *(edge for low, high in sorted(taken) for edge in (low, high)), span[1]]
+    gaps = [(max(low, span[0]), min(high, span[1])) for low, high in zip(edges[::2], edges[1::2], strict=True)]
+    wide = [(low, high) for low, high in gaps if high - low >= seconds]
+    if not wide:
+        return None
+    return wide[0][0] if forward else wide[-1][1] - seconds
+
+
 def _total_s(problem: Problem, commands: Sequence[int]) -> int:
     """Return the seconds that commands take together."""
     return sum(problem.commands[command].seconds for command in commands)
@@ -99,28 +214,32 @@ def _sides(
     index: int,
     fixed: tuple[list[int], list[int]],
     inside: tuple[int, int],
-) -> tuple[list[int], list[int]]:
+) -> tuple[list[int], list[int]] | None:
     """Return which of the commands that may stand on either side go before and after the downlink.
 
-    Every split is weighed: one that fits both rooms and comes nearest to the seconds that
-    the solution leans to the left.
+    None where no split fits.
+
+    Every split is weighed: one that keeps chains in order, fits both rooms and comes nearest
+    to the seconds that the solution leans to the left.
     """
-    offered = problem.passes[index]
     free = _chosen(names.up_either, values, index)
     if not free:
         return [], []
-    reach = offered.reaches[0]
-    begin, end = inside
-    room_left = max(0, min(end, offered.peak_s) - max(begin, reach.rise_s)) - _total_s(problem, fixed[0])
-    room_right = max(0, min(end, reach.fall_s) - max(begin, offered.peak_s)) - _total_s(problem, fixed[1])
+    room_left = _room_s(problem, index, inside, fixed[0], "left")
+    room_right = _room_s(problem, index, inside, fixed[1], "right")
     leaning_s = float(values[names.leaning[index]])
 
-    def unfit(mask: int) -> tuple[float, float, int]:
+    def unfit(mask: int) -> tuple[int, float, float, int]:
+        before = {c for k, c in enumerate(free) if mask >> k & 1} | set(fixed[0])
+        late = {c for c in (*free, *fixed[1]) if c not in before}
+        wrong = sum(first in late for c in before for first, _ in problem.commands[c].after)
         left_s = sum(problem.commands[c].seconds for k, c in enumerate(free) if mask >> k & 1)
         right_s = _total_s(problem, free) - left_s
-        return max(0, left_s - room_left) + max(0, right_s - room_right), abs(left_s - leaning_s), mask
+        return wrong, max(0, left_s - room_left) + max(0, right_s - room_right), abs(left_s - leaning_s), mask
 
     best = min(range(1 << len(free)), key=unfit)
+    if any(unfit(best)[:2]):
+        return None
     return [c for k, c in enumerate(free) if best >> k & 1], [c for k, c in enumerate(free) if not best >> k & 1]
 
 
@@ -180,12 +299,15 @@ def _uplinks(problem: Problem, commands: Sequence[int], begin: int) -> list[Slot
     return slots
 
 
-def _downlinks(parts: Sequence[tuple[int, int]]) -> list[Slot]:
-    """Return downlink slots, touching ones as one, empty ones left out."""
-    (a, b), (c, d) = parts
-    if b == c and a < b and c < d:
-        return [Slot(kind="downlink", start_s=a, end_s=d)]
-    return [Slot(kind="downlink", start_s=low, end_s=high) for low, high in parts if high > low]
+def _downlinks(parts: Iterable[tuple[int, int]]) -> list[Slot]:
+    """Return downlink slots in order, touching ones as one, empty ones left out."""
+    joined: list[tuple[int, int]] = []
+    for low, high in sorted(part for part in parts if part[1] > part[0]):
+        if joined and low <= joined[-1][1]:
+            joined[-1] = joined[-1][0], high
+        else:
+            joined.append((low, high))
+    return [Slot(kind="downlink", start_s=low, end_s=high) for low, high in joined]
 
 
 def _operators(problem: Problem, names: Variables, values: Values, index: int) -> tuple[int, ...]:

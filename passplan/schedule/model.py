@@ -145,7 +145,7 @@ class Model:
             time_limit=timedelta(seconds=max(0.05, seconds)),
             relative_gap_tolerance=gap,
             absolute_gap_tolerance=0.999 if whole else 1e-9,
-            highs=highs_pb2.HighsOptionsProto(int_options={"threads": 1, "presolve_rule_off": _AGGREGATOR_OFF}) if solver == "highs" else None,
+            highs=_highs(),
         )
         extra = mathopt.ModelSolveParameters()
         if hint is not None:
@@ -156,10 +156,15 @@ class Model:
                 if self.integer[n]
             }
             extra.solution_hints.append(mathopt.SolutionHint(variable_values=columns))
-        try:
-            result = _interruptible(model, _SOLVERS[solver], parameters, extra)
-        except (AttributeError, RuntimeError, ValueError):
-            # A failed solve can surface as an AttributeError about a status code.
+        result = _interruptible(model, _SOLVERS[solver], parameters, extra)
+        if isinstance(result, Exception):
+            # HiGHS fails on a few sound models; without a hint and presolve it mostly does not.
+            parameters.highs = _highs(presolve="off")
+            result = _interruptible(model, _SOLVERS[solver], parameters, mathopt.ModelSolveParameters())
+        if isinstance(result, Exception):
+            other = mathopt.SolverType.GSCIP if solver == "highs" else mathopt.SolverType.HIGHS
+            result = _interruptible(model, other, parameters, mathopt.ModelSolveParameters())
+        if isinstance(result, Exception):
             return Answer("unknown", np.empty(0), np.nan, np.nan, time.perf_counter() - begin)
         return self._answer(result, time.perf_counter() - begin)
 
@@ -203,8 +208,8 @@ def _interruptible(
     solver: mathopt.SolverType,
     parameters: mathopt.SolveParameters,
     extra: mathopt.ModelSolveParameters,
-) -> mathopt.SolveResult:
-    """Solve in a thread of its own, so that Ctrl-C is heard while the solver works."""
+) -> mathopt.SolveResult | Exception:
+    """Solve in a thread of its own, so that Ctrl-C is heard; a failure inside is returned."""
     stop = SolveInterrupter()
     found: list[mathopt.SolveResult | Exception] = []
 
@@ -214,6 +219,7 @@ def _interruptible(
                 mathopt.solve(model, solver, params=parameters, model_params=extra, interrupter=stop)
             )
         except (AttributeError, RuntimeError, ValueError) as error:
+            # A failed solve can surface as an AttributeError about a status code.
             found.append(error)
 
     worker = threading.Thread(target=work, daemon=True)
@@ -225,6 +231,13 @@ def _interruptible(
         stop.interrupt()
         worker.join(_GRACE_S)
         raise
-    if isinstance(found[0], Exception):
-        raise found[0]
     return found[0]
+
+
+def _highs(**strings: str) -> highs_pb2.HighsOptionsProto:
+    """Return HiGHS's options; two cores are left to the machine, and one thread is reproducible."""
+    return highs_pb2.HighsOptionsProto(
+        int_options={"threads": 1, "presolve_rule_off": _AGGREGATOR_OFF},
+        double_options={"mip_feasibility_tolerance": 1e-7},
+        string_options=strings,
+    )

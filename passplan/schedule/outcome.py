@@ -10,6 +10,9 @@ from passplan.schedule.model import Values
 from passplan.schedule.stock import Stock, carry
 from passplan.schedule.variables import Variables, weight_of
 
+# Slots are whole seconds, the solution's are not: a second of transmitting either way.
+_ROUNDING_J = 20.0
+
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Outcome:
@@ -34,6 +37,19 @@ class Outcome:
         total = sum(self._contact_worth(laid) for laid in self.contacts if laid.option.start_s < until)
         return total + sum(problem.sessions[which].worth for which, at in self.starts.items() if at < until)
 
+    def bears(self, number: int) -> bool:
+        """Return whether one satellite's battery keeps its floors and reaches the charge wanted at the end."""
+        problem, craft, charge = self.problem, self.problem.crafts[number], self.charges[number]
+        if charge.lowest(0.0, problem.horizon.end_s)[1] < craft.floor_j - _ROUNDING_J:
+            return False
+        for laid in self.contacts:
+            if problem.passes[laid.index].satellite == number:
+                least = [problem.commands[command].least_charge_fraction or 0.0 for command in laid.commands]
+                wanted_j = max([craft.transmit_floor_j, *(f * craft.capacity_j for f in least)])
+                if charge.at(laid.option.start_s) < wanted_j - _ROUNDING_J:
+                    return False
+        return charge.at(problem.horizon.end_s) >= craft.end_j - _ROUNDING_J
+
     def _contact_worth(self, laid: LaidOut) -> float:
         """Return the expected worth of what goes up and comes down in one contact."""
         offered = self.problem.passes[laid.index]
@@ -45,8 +61,19 @@ class Outcome:
 
 
 def outcome(problem: Problem, names: Variables, values: Values) -> Outcome:
-    """Lay a solution out and play its store and battery."""
-    contacts = lay_out(problem, names, values)
+    """Lay a solution out and play its store and battery.
+
+    Downlinks are put together around the peaks; for a satellite whose battery does not
+    bear that, they stand as the solution has them.
+    """
+    made = _played(problem, names, values, frozenset())
+    broken = frozenset(number for number in range(len(problem.crafts)) if not made.bears(number))
+    return _played(problem, names, values, broken) if broken else made
+
+
+def _played(problem: Problem, names: Variables, values: Values, pieces: frozenset[int]) -> Outcome:
+    """Lay a solution out in one way and play it."""
+    contacts = lay_out(problem, names, values, pieces=pieces)
     starts = started(problem, names, values)
     own = [
         [laid for laid in contacts if problem.passes[laid.index].satellite == number]

@@ -15,6 +15,7 @@ from passplan.schedule.variables import Variables
 
 RULES = frozenset({Rule.BATTERY_FLOOR, Rule.TRANSMIT_FLOOR, Rule.END_CHARGE, Rule.COMMAND_CHARGE})
 GRID_S = 60
+SESSION_GRID_S = 300
 _KJ = 1e-3
 
 
@@ -83,14 +84,16 @@ def _nodes(problem: Problem, craft: Craft, number: int) -> list[float]:
         if offered.satellite == number:
             for part in offered.slices:
                 edges |= {float(part.minute_s // GRID_S * GRID_S), float((part.minute_s // GRID_S + 1) * GRID_S)}
-    runs: list[tuple[float, float]] = []
-    for session in problem.sessions:
-        if session.satellite == number:
-            for start in session.starts_s:
-                edges |= {float(start), float(start + session.length_s)}
-                runs.append((start, start + session.length_s))
+    runs = [
+        (float(start), float(start + session.length_s))
+        for session in problem.sessions
+        if session.satellite == number
+        for start in session.starts_s
+    ]
     for low, high in _merged(runs):
         edges |= {span.start_s for span in craft.idle if low < span.start_s < high}
+        first, last = int(low // SESSION_GRID_S), int(-(-high // SESSION_GRID_S))
+        edges |= {float(number_of * SESSION_GRID_S) for number_of in range(first, last + 1)}
     return sorted(edge for edge in edges if 0.0 <= edge <= problem.horizon.end_s)
 
 
@@ -125,11 +128,12 @@ def _loads(
         if session.satellite != number:
             continue
         for start, column in zip(session.starts_s, names.run[which], strict=True):
-            first = bisect_right(nodes, start) - 1
-            last = bisect_right(nodes, start + session.length_s - 1e-6) - 1
+            end = start + session.length_s
+            first, last = bisect_right(nodes, start) - 1, bisect_right(nodes, end - 1e-6) - 1
             for place in range(first, last + 1):
                 extra = _extra_w(craft, nodes[place], nodes[place + 1], session.draw_w)
-                loads[place].append((column, extra * (nodes[place + 1] - nodes[place]) * _KJ))
+                seconds = min(end, nodes[place + 1]) - max(start, nodes[place])
+                loads[place].append((column, extra * seconds * _KJ))
     return loads
 
 

@@ -1,9 +1,9 @@
 """Rows of the contacts: one conversation at a time, and the seconds each side of the peak."""
 
 import math
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterator, Sequence
 
-from passplan.domain.problem import OfferedPass, Problem, Side
+from passplan.domain.problem import OfferedPass, Problem, Reach, Side
 from passplan.domain.rules import Rule
 from passplan.schedule.model import Model, Term
 from passplan.schedule.variables import Variables
@@ -22,10 +22,15 @@ def contact_rows(problem: Problem, model: Model, names: Variables) -> None:
     _conversations(problem, model, names)
     _stations(problem, model, names)
     _peak_order(problem, model, names)
-    for index, offered in enumerate(problem.passes):
-        _slices(model, names, index, offered)
-        _left(problem, model, names, index)
-        _right(problem, model, names, index)
+    for index in range(len(problem.passes)):
+        _slices(problem, model, names, index)
+        _side(problem, model, names, index, "left")
+        _side(problem, model, names, index, "right")
+        if index in names.leaning:
+            model.row(
+                [(names.leaning[index], -1.0), *_either(problem, names, index)],
+                lower=0.0,
+            )
 
 
 def cliques(intervals: Sequence[Interval]) -> Iterator[list[int]]:
@@ -123,15 +128,20 @@ def _against_order(problem: Problem, model: Model, names: Variables, first: int,
         model.row([(names.x[second][number], 1.0), *((column, 1.0) for column in clash)], upper=1.0)
 
 
-def _slices(model: Model, names: Variables, index: int, offered: OfferedPass) -> None:
-    """The satellite transmits in a slice only while a used option covers it; bytes fit the seconds."""
+def _slices(problem: Problem, model: Model, names: Variables, index: int) -> None:
+    """The satellite transmits in a slice only while a used option covers it, acquire and close aside.
+
+    Bytes fit the seconds.
+    """
+    offered, terms = problem.passes[index], problem.terms
     for part, column in zip(offered.slices, names.t[index], strict=True):
-        terms = [(column, 1.0)]
+        row = [(column, 1.0)]
         for option, chosen in zip(offered.options, names.x[index], strict=True):
-            covered = min(option.end_s, part.end_s) - max(option.start_s, part.start_s)
+            end = min(option.end_s - terms.close_s, part.end_s)
+            covered = end - max(option.start_s + terms.acquire_s, part.start_s)
             if covered > 0:
-                terms.append((chosen, -float(covered)))
-        model.row(terms, upper=0.0)
+                row.append((chosen, -float(covered)))
+        model.row(row, upper=0.0)
     carried = [
         (column, -part.goodput_byte_s / 1000.0)
         for part, column in zip(offered.slices, names.t[index], strict=True)
@@ -139,61 +149,66 @@ def _slices(model: Model, names: Variables, index: int, offered: OfferedPass) ->
     model.row([*((column, 1.0) for column in names.v[index].values()), *carried], upper=0.0)
 
 
-def _left(problem: Problem, model: Model, names: Variables, index: int) -> None:
-    """Commands before the downlink and the downlink before the peak share the seconds left of the peak."""
-    offered, terms = problem.passes[index], problem.terms
-    placed = {command: column for (command, where), column in names.up_left.items() if where == index}
-    leaning = [(names.leaning[index], 1.0)] if index in names.leaning else []
-    rises = {command: offered.reach(problem.commands[command].least_elevation_deg).rise_s for command in placed}
-    for rise_s in sorted({-math.inf, offered.reaches[0].rise_s, *rises.values()}):
-        rooms = [
-            min(option.end_s - terms.close_s, offered.peak_s) - max(option.start_s + terms.acquire_s, rise_s)
-            for option in offered.options
-        ]
-        inside = [command for command in placed if rises[command] >= rise_s]
-        more = leaning if rise_s <= offered.reaches[0].rise_s else []
-        _side(problem, model, names, index, "left", rooms, {c: placed[c] for c in inside}, more)
+def rooms_s(problem: Problem, offered: OfferedPass, side: Side, reach: Reach | None) -> list[float]:
+    """Return for each option the seconds of one side, those of a command's reach where one is given."""
+    rise, fall = (-math.inf, math.inf) if reach is None else (reach.rise_s, reach.fall_s)
+    rooms = []
+    for option in offered.options:
+        begin, end = option.start_s + problem.terms.acquire_s, option.end_s - problem.terms.close_s
+        if side == "left":
+            rooms.append(max(0.0, min(end, offered.peak_s) - max(begin, rise)))
+        else:
+            rooms.append(max(0.0, min(end, fall) - max(begin, offered.peak_s)))
+    return rooms
 
 
-def _right(problem: Problem, model: Model, names: Variables, index: int) -> None:
-    """The downlink after the peak and commands after it share the seconds right of the peak."""
-    offered, terms = problem.passes[index], problem.terms
-    placed = {command: column for (command, where), column in names.up_right.items() if where == index}
-    either = {command: column for (command, where), column in names.up_either.items() if where == index}
-    leaning = [(names.leaning[index], -1.0)] if index in names.leaning else []
-    leaning += [(column, float(problem.commands[command].seconds)) for command, column in either.items()]
-    falls = {command: offered.reach(problem.commands[command].least_elevation_deg).fall_s for command in placed}
-    for fall_s in sorted({math.inf, offered.reaches[0].fall_s, *falls.values()}):
-        rooms = [
-            min(option.end_s - terms.close_s, fall_s) - max(option.start_s + terms.acquire_s, offered.peak_s)
-            for option in offered.options
-        ]
-        inside = [command for command in placed if falls[command] <= fall_s]
-        more = leaning if fall_s >= offered.reaches[0].fall_s else []
-        _side(problem, model, names, index, "right", rooms, {c: placed[c] for c in inside}, more)
-    if index in names.leaning:
-        seconds = [(column, -float(problem.commands[command].seconds)) for command, column in either.items()]
-        model.row([(names.leaning[index], 1.0), *seconds], upper=0.0)
+def _side(problem: Problem, model: Model, names: Variables, index: int, side: Side) -> None:
+    """Commands and downlink of one side share its seconds.
 
-
-def _side(
-    problem: Problem,
-    model: Model,
-    names: Variables,
-    index: int,
-    side: Side,
-    rooms: Sequence[float],
-    placed: Mapping[int, int],
-    leaning: Sequence[Term],
-) -> None:
-    """Add one row of one side: commands and downlink fit the room that the used option leaves."""
+    A command that wants the satellite high pushes the downlink inwards, but only where it
+    is placed: its row is slack by as much as the rooms differ when it is not.
+    """
     offered = problem.passes[index]
-    sent = [
-        (column, 1.0)
-        for part, column in zip(offered.slices, names.t[index], strict=True)
-        if part.side == side
-    ]
-    sending = [(column, float(problem.commands[command].seconds)) for command, column in placed.items()]
-    room = [(column, -max(0.0, float(r))) for column, r in zip(names.x[index], rooms, strict=True)]
-    if sent or sending or leaning:
+    columns = names.up_left if side == "left" else names.up_right
+    placed = {command: column for (command, where), column in columns.items() if where == index}
+    sent = [(c, 1.0) for part, c in zip(offered.slices, names.t[index], strict=True) if part.side == side]
+    leaning = _leaning(problem, names, index, side)
+    whole = rooms_s(problem, offered, side, None)
+    seconds = {command: float(problem.commands[command].seconds) for command in placed}
+    if sent or placed or leaning:
+        sending = [(column, seconds[command]) for command, column in placed.items()]
+        room = [(column, -r) for column, r in zip(names.x[index], whole, strict=True)]
         model.row([*sent, *sending, *leaning, *room], upper=0.0)
+    rooms = {
+        command: rooms_s(problem, offered, side, offered.reach(problem.commands[command].least_elevation_deg))
+        for command in placed
+    }
+    for command, inside in rooms.items():
+        slack = max(all_ - part for all_, part in zip(whole, inside, strict=True))
+        if slack <= 0.0:
+            continue
+        nearer = [
+            (placed[other], seconds[other])
+            for other, room in rooms.items()
+            if all(a <= b for a, b in zip(room, inside, strict=True))
+        ]
+        room = [(column, -(r + slack)) for column, r in zip(names.x[index], inside, strict=True)]
+        model.row([*sent, *nearer, (placed[command], slack), *room], upper=0.0)
+
+
+def _leaning(problem: Problem, names: Variables, index: int, side: Side) -> list[Term]:
+    """Return the seconds, on one side, of the commands whose side the lay-out chooses."""
+    if index not in names.leaning:
+        return []
+    if side == "left":
+        return [(names.leaning[index], 1.0)]
+    return [(names.leaning[index], -1.0), *_either(problem, names, index)]
+
+
+def _either(problem: Problem, names: Variables, index: int) -> list[Term]:
+    """Return the seconds of the commands that may stand on either side."""
+    return [
+        (column, float(problem.commands[command].seconds))
+        for (command, where), column in names.up_either.items()
+        if where == index
+    ]

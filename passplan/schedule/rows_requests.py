@@ -49,37 +49,36 @@ def _order(problem: Problem, model: Model, names: Variables) -> None:
 def _ladder(
     model: Model, names: Variables, own: Sequence[int], first: int, second: int, *, together: bool
 ) -> None:
-    """Add one ladder: two rungs a pass, before and after the downlink.
+    """Add one ladder: a rung a pass, and two where the side of the downlink is settled here.
 
     `gone` is a running sum: how much more often the first has gone up than the second.
     """
     gone = model.column(0.0, 0.0)
     for index in own:
-        if together:
-            for side in (names.up_left, names.up_right):
-                gone = _rung(model, gone, side.get((first, index)), side.get((second, index)))
-            continue
         ours, theirs = names.up(second, index), names.up(first, index)
         if not ours and not theirs:
             continue
-        taken: list[Term] = [(column, 1.0) for column in ours]
-        if taken:
-            model.row([*taken, (gone, -1.0)], upper=0.0)
-        added: list[Term] = [(column, -1.0) for column in theirs]
+        if together:
+            right_1, left_2 = names.up_right.get((first, index)), names.up_left.get((second, index))
+            if right_1 is not None and left_2 is not None:
+                # The second before the downlink, the first after it: only if the first went before.
+                model.row([(left_2, 1.0), (gone, -1.0), *_less(theirs, right_1)], upper=0.0)
+        elif ours:
+            model.row([*((column, 1.0) for column in ours), (gone, -1.0)], upper=0.0)
         after = model.column(0.0, 1.0)
-        model.row([(after, 1.0), (gone, -1.0), *added, *taken], 0.0, 0.0)
+        model.row(
+            [
+                (after, 1.0),
+                (gone, -1.0),
+                *((column, -1.0) for column in theirs),
+                *((column, 1.0) for column in ours),
+            ],
+            0.0,
+            0.0,
+        )
         gone = after
 
 
-def _rung(model: Model, gone: int, first: int | None, second: int | None) -> int:
-    """Add one rung of a ladder whose two commands may share a window; return the new running sum."""
-    if first is None and second is None:
-        return gone
-    after = model.column(0.0, 1.0)
-    terms: list[Term] = [(after, 1.0), (gone, -1.0)]
-    if first is not None:
-        terms.append((first, -1.0))
-    if second is not None:
-        terms.append((second, 1.0))
-    model.row(terms, 0.0, 0.0)
-    return after
+def _less(columns: Sequence[int], without: int) -> list[Term]:
+    """Return minus the sum of columns but one."""
+    return [(column, -1.0) for column in columns if column != without]

@@ -9,7 +9,9 @@ import numpy as np
 
 from passplan.domain.plan import StepReport
 from passplan.domain.problem import Problem
+from passplan.schedule.layout import misfits
 from passplan.schedule.model import Answer, Model, Solver, Values
+from passplan.schedule.outcome import outcome
 from passplan.schedule.rows_charge import charge_rows
 from passplan.schedule.rows_contacts import contact_rows
 from passplan.schedule.rows_people import people_rows
@@ -60,6 +62,7 @@ class Chain:
     """A model that grows a row with each step held.
 
     Attributes:
+        plain: the model before any step was held.
         ends: moment (s, performance counter) at which the time is up.
         values: of the last solution, which fits every row so far; best: of the worth step.
         done: (step, value, bound, proven) of the steps reported.
@@ -71,6 +74,7 @@ class Chain:
     ends: float
     solver: Solver
     tell: Tell
+    plain: Model
     values: Values | None = None
     best: Values | None = None
     done: list[tuple[Step, float, float, bool]] = field(default_factory=list)
@@ -86,20 +90,32 @@ class Chain:
             loose: 0/1 columns that may first be fractions; see `_loosely`.
         """
         seconds = max(0.0, self.ends - time.perf_counter()) * share
-        answer = self._loosely(step, seconds, loose) if loose else None
-        if answer is None:
-            answer = self._solve(self.model, step, seconds)
+        answer = self._packed(step, seconds, loose)
         self.tell(f"{step.name}: {answer.value:.6g} {step.unit}, bound {answer.bound:.6g}, {answer.seconds:.1f} s")
         if answer.found:
             self.values = answer.values
-        elif self.values is None or answer.status == "infeasible":
+        elif self.values is None or max(step.objective, default=0) >= len(self.values):
             return False
         value = step.value(self.values)
         bound = _bound(step, answer, value)
         if report:
             self.done.append((step, value, bound, abs(bound - value) <= _GAP * max(1.0, abs(value))))
-        step.hold(self.model, value, slack=max(1e-6, 1e-7 * abs(value)))
+        step.hold(self.model, value, slack=max(1e-4 if step.whole else 1e-6, 1e-7 * abs(value)))
         return True
+
+    def _packed(self, step: Step, seconds: float, loose: Sequence[int]) -> Answer:
+        """Solve one step until every contact can be laid out; what does not fit is forbidden for good."""
+        ends = time.perf_counter() + seconds
+        while True:
+            left = max(0.0, ends - time.perf_counter())
+            answer = self._loosely(step, left, loose) if loose else None
+            if answer is None:
+                answer = self._solve(self.model, step, max(0.0, ends - time.perf_counter()))
+            cuts = misfits(self.problem, self.names, answer.values) if answer.found else []
+            if not cuts:
+                return answer
+            for columns in cuts:
+                self.model.row([(column, 1.0) for column in columns], upper=len(columns) - 1.0)
 
     def _solve(self, model: Model, step: Step, seconds: float) -> Answer:
         """Solve one step on a model, from the last solution on."""
@@ -147,15 +163,21 @@ def _bound(step: Step, answer: Answer, value: float) -> float:
     return max(bound, value) if step.maximise else min(bound, value)
 
 
-def build(problem: Problem) -> tuple[Model, Variables]:
-    """Return the model of a problem with every row but those of the steps."""
+def build(problem: Problem, *, charge: bool = True) -> tuple[Model, Variables]:
+    """Return the model of a problem with every row but those of the steps.
+
+    Args:
+        problem: what to write down.
+        charge: with the rows of the batteries.
+    """
     model = Model()
     names = variables(problem, model)
     contact_rows(problem, model, names)
     request_rows(problem, model, names)
     people_rows(problem, model, names)
-    charge_rows(problem, model, names)
     store_rows(problem, model, names)
+    if charge:
+        charge_rows(problem, model, names)
     return model, names
 
 
@@ -164,14 +186,42 @@ def solve(
 ) -> Solved:
     """Return the best plan of a problem, step by step.
 
+    Where the relaxation does not feel the batteries, the chain is walked without their rows
+    first: a plan whose ledger keeps every floor is then the best with them too, as leaving
+    rows out can only raise a bound.
+
     Args:
         problem: what to solve.
         time_limit_s: for the whole chain; the best plan so far is kept when it strikes.
         solver: which.
         tell: called with a line after each solve.
     """
-    model, names = build(problem)
-    chain = Chain(problem, model, names, time.perf_counter() + time_limit_s, solver, tell)
+    ends = time.perf_counter() + time_limit_s
+    if (problem.passes or problem.sessions) and not _feels_charge(problem):
+        solved = _chain(problem, ends, solver, tell, charge=False)
+        kept = [outcome(problem, solved.names, values) for values in (solved.values, solved.best)]
+        if all(made.bears(number) for made in kept for number in range(len(problem.crafts))):
+            return solved
+        tell("the battery matters after all; once more with its rows")
+    return _chain(problem, ends, solver, tell, charge=True)
+
+
+def _feels_charge(problem: Problem) -> bool:
+    """Return whether the rows of the batteries lower the most worth with fractions allowed."""
+    most = []
+    for charge in (True, False):
+        model, names = build(problem, charge=charge)
+        objective = dict(worth_step(problem, names).objective)
+        if charge:
+            objective |= dict.fromkeys(names.short, -1.0)
+        most.append(model.solve(objective, maximise=True, seconds=30.0, relaxed=True).value)
+    return not most[0] >= most[1] - 1e-6 * abs(most[1])
+
+
+def _chain(problem: Problem, ends: float, solver: Solver, tell: Tell, *, charge: bool) -> Solved:
+    """Walk the chain on one model."""
+    model, names = build(problem, charge=charge)
+    chain = Chain(problem, model, names, ends, solver, tell, plain=model.copy())
     interrupted = False
     if problem.passes or problem.sessions:
         try:
@@ -180,8 +230,8 @@ def solve(
             interrupted = True
     if chain.values is None:
         chain.values = np.zeros(len(model.lower))
-    values = _polish(chain)
-    best = values if chain.best is None else chain.best
+    values = _polish(chain, chain.values)
+    best = values if chain.best is None else _polish(chain, chain.best)
     reports = tuple(
         StepReport(
             name=step.name,
@@ -189,7 +239,8 @@ def solve(
             value=value,
             bound=bound,
             give=step.give(value),
-            kept=step.value(values),
+            # The fairest share has a column of its own, which only the chain's model has.
+            kept=step.value(values if max(step.objective, default=0) < len(values) else chain.values),
             proven=proven and not interrupted,
         )
         for step, value, bound, proven in chain.done
@@ -203,11 +254,14 @@ def _walk(chain: Chain) -> None:
     _before_worth(chain)
     chain.take(worth_step(problem, names), share=0.6)
     chain.best = chain.values
+    if chain.values is None:  # the time was up before there was a solution
+        return
     uplinks = names.uplinks()
+    requests = uplinks + [column for starts in names.run for column in starts]
     for step in burden_steps(problem, names):
-        chain.take(step, share=0.7, loose=uplinks)
+        chain.take(step, share=0.7, loose=requests)
     chain.take(replace(worth_step(problem, names), name="worth again", give=nothing), share=0.7)
-    for column in uplinks:
+    for column in requests:
         chain.model.fix(column, round(float(chain.values[column])))
     chain.take(contacts_step(problem, names), report=False, share=0.7)
     _share_out(chain)
@@ -222,14 +276,17 @@ def _before_worth(chain: Chain) -> None:
     problem, names = chain.problem, chain.names
     steps = must_steps(problem, names)
     urgent = urgent_step(problem, names)
-    hopeful = chain.model.copy()
+    lean = chain.model.copy()
+    for column in _idle_columns(problem, names):
+        lean.fix(column, 0.0)
     for step in steps:
-        step.hold(hopeful, step.ideal or 0.0)
-    trial = Chain(problem, hopeful, names, chain.ends, chain.solver, chain.tell)
+        step.hold(lean, step.ideal or 0.0)
+    trial = Chain(problem, lean, names, chain.ends, chain.solver, chain.tell, chain.plain)
     if trial.take(urgent or Step("everything wanted first", "", {}, maximise=False), report=urgent is not None):
-        chain.model, chain.values = trial.model, trial.values
-        chain.seconds |= trial.seconds
+        chain.values, chain.seconds = trial.values, chain.seconds | trial.seconds
         chain.done = [(step, step.ideal or 0.0, step.ideal or 0.0, True) for step in steps] + trial.done
+        for step, value, _, _ in chain.done:
+            step.hold(chain.model, value)
         return
     for step in steps:
         chain.take(step)
@@ -237,6 +294,22 @@ def _before_worth(chain: Chain) -> None:
             chain.take(first_must(problem, names), report=False)
     if urgent:
         chain.take(urgent)
+
+
+def _idle_columns(problem: Problem, names: Variables) -> list[int]:
+    """Return the columns that only take from what musts and end charge need: they may stand at nothing.
+
+    Bytes, downlink seconds, sessions, and commands that no must waits for.
+    """
+    needed = {number for number, command in enumerate(problem.commands) if command.must}
+    for _ in problem.commands:
+        needed |= {first for number in needed for first, _ in problem.commands[number].after}
+    columns = [column for parts in names.t for column in parts]
+    columns += [column for parts in names.v for column in parts.values()]
+    columns += [column for starts in names.run for column in starts]
+    for side in (names.up_left, names.up_right, names.up_either):
+        columns += [column for (command, _), column in side.items() if command not in needed]
+    return columns
 
 
 def _share_out(chain: Chain) -> None:
@@ -270,17 +343,21 @@ def _at_most(chain: Chain, largest: float) -> dict[int, float]:
     }
 
 
-def _polish(chain: Chain) -> Values:
+def _polish(chain: Chain, values: Values) -> Values:
     """With every 0/1 fixed and whole, take most worth, then the downlink nearest to the peaks."""
     problem, names = chain.problem, chain.names
-    model = chain.model.copy()
+    model = chain.plain.copy()
     for column in names.integers():
-        model.fix(column, round(float(chain.values[column])))
+        model.fix(column, round(float(values[column])))
+    for step in must_steps(problem, names)[1:]:
+        step.hold(model, step.value(values))
     worth = worth_step(problem, names)
     answer = model.solve(worth.objective, maximise=True, seconds=30.0, relaxed=True, solver=chain.solver)
     if not answer.found:
-        return chain.values
-    Step("worth", "kB", worth.objective, maximise=True).hold(model, answer.value, slack=1e-6 * abs(answer.value) + 1e-6)
+        return values
+    Step("worth", "kB", worth.objective, maximise=True).hold(
+        model, answer.value, slack=1e-6 * abs(answer.value) + 1e-6
+    )
     far = {
         column: 1.0 + abs((part.start_s + part.end_s) / 2.0 - offered.peak_s) / 100.0
         for index, offered in enumerate(problem.passes)

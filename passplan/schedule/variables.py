@@ -98,8 +98,8 @@ def variables(problem: Problem, model: Model) -> Variables:
 def _uplinks(problem: Problem, model: Model, names: Variables, index: int, command: int) -> None:
     """Add the columns of one command in one pass, where its seconds fit beside the peak.
 
-    A command's side matters to the model only where its own least elevation or a chain
-    inside one window asks for it; otherwise half the columns do, and the lay-out chooses.
+    A command's side matters to the model only where its own least elevation asks for it;
+    otherwise half the columns do, and the lay-out chooses, the order of chains in mind.
     """
     offered, wanted = problem.passes[index], problem.commands[command]
     reach = offered.reach(wanted.least_elevation_deg)
@@ -107,19 +107,14 @@ def _uplinks(problem: Problem, model: Model, names: Variables, index: int, comma
     last = min(max(option.end_s for option in offered.options) - problem.terms.close_s, reach.fall_s)
     left = min(offered.peak_s, last) - first >= wanted.seconds
     right = last - max(offered.peak_s, first) >= wanted.seconds
-    if left and right and wanted.least_elevation_deg is None and not _chained(problem, command):
+    everywhere = reach.rise_s <= first and reach.fall_s >= offered.slices[-1].end_s - problem.terms.close_s
+    if left and right and wanted.least_elevation_deg is None and everywhere:
         names.up_either[command, index] = model.binary()
         return
     if left:
         names.up_left[command, index] = model.binary()
     if right:
         names.up_right[command, index] = model.binary()
-
-
-def _chained(problem: Problem, command: int) -> bool:
-    """Return whether a command may share a window with one it is ordered with."""
-    links = [(number, *link) for number, wanted in enumerate(problem.commands) for link in wanted.after]
-    return any(command in pair and order != "after_contact" for *pair, order in links)
 
 
 def data_classes(craft: Craft, offered: OfferedPass) -> list[DataClass]:

@@ -93,7 +93,7 @@ def test_fewer_sittings_for_a_small_give() -> None:
     assert step(solve(week(passes, craft=craft)), "sittings") == (2.0, 2.0)
 
 
-def test_night_minutes_choose_who_serves() -> None:
+def test_night_duty_chooses_who_serves() -> None:
     # Alike but for the night: each operator has 5 minutes of it in the other one's passes.
     people = [OPERATOR, replace(OPERATOR, handle="qb")]
     passes = [offer(3600, 4000, people=[0, 1]), offer(50_000, 50_400, people=[0, 1])]
@@ -103,5 +103,5 @@ def test_night_minutes_choose_who_serves() -> None:
         for p, night in zip(passes, nights, strict=True)
     ]
     problem = week(passes, people=people)
-    assert step(solve(problem), "night minutes") == (0.0, 0.0)
+    assert step(solve(problem), "night duty") == (0.0, 0.0)
     assert [laid.operators for laid in contacts(problem)] == [(1,), (0,)]
