@@ -6,10 +6,11 @@ the workspace is read, so that files and code cannot disagree about what is allo
 """
 
 import math
+import operator
 import re
 from dataclasses import fields
 from functools import cache
-from typing import Annotated, Any, get_args, get_origin, get_type_hints
+from typing import Annotated, Any, ClassVar, TypeAlias, get_args, get_origin, get_type_hints
 
 from annotated_types import Ge, Gt, Interval, Le, Lt
 
@@ -27,26 +28,35 @@ Seconds = Annotated[float, Interval(ge=0.0, le=1e7)]
 Azimuth = Annotated[float, Interval(ge=0.0, le=360.0)]
 Elevation = Annotated[float, Interval(ge=-5.0, le=90.0)]
 
+Hint: TypeAlias = Any  # the type hint of a field, or a part of one
+
 _CODE = re.compile(r"[A-Z][A-Z0-9]{1,7}")
 _MOST_TEXT = 200
+_BOUNDS = (
+    (Ge, "ge", operator.ge, "at least"),
+    (Gt, "gt", operator.gt, "more than"),
+    (Le, "le", operator.le, "at most"),
+    (Lt, "lt", operator.lt, "less than"),
+)
 
 
 class Checked:
     """Base of the nouns: enforces field limits when an object is made."""
 
     __slots__ = ()
-    __pydantic_config__ = {"extra": "forbid", "allow_inf_nan": False}
+    __pydantic_config__: ClassVar[dict[str, object]] = {"extra": "forbid", "allow_inf_nan": False}
 
     def __post_init__(self) -> None:
         """Raise FieldError with every field outside its limits."""
+        noun: type = type(self)
         faults = [
             (name, value, told)
-            for name, limits in _limits(type(self)).items()
+            for name, limits in _limits(noun).items()
             if (told := _fault(value := getattr(self, name), limits))
         ]
         faults.extend(self._faults())
         if faults:
-            raise FieldError(type(self).__name__, faults)
+            raise FieldError(noun.__name__, faults)
 
     def _faults(self) -> list[tuple[str, object, str]]:
         """Return what only this noun can know is wrong; overridden where fields depend on each other."""
@@ -79,11 +89,11 @@ def code_fault(name: str, value: str) -> list[tuple[str, object, str]]:
 def _limits(noun: type) -> dict[str, tuple[object, ...]]:
     """Return the limits of each field of `noun` that has any."""
     hints = get_type_hints(noun, include_extras=True)
-    found = {field.name: tuple(_metadata(hints[field.name])) for field in fields(noun)}  # type: ignore[arg-type]
+    found = {field.name: tuple(_metadata(hints[field.name])) for field in fields(noun)}
     return {name: limits for name, limits in found.items() if limits}
 
 
-def _metadata(hint: Any) -> list[object]:
+def _metadata(hint: Hint) -> list[object]:
     """Return the limits in a type hint, also inside an optional one."""
     if get_origin(hint) is Annotated:
         return list(hint.__metadata__)
@@ -107,27 +117,14 @@ def _fault(value: object, limits: tuple[object, ...]) -> str:
 
 def _holds(value: float, bound: object) -> bool:
     """Return whether one bound of annotated_types holds; an unknown kind always does."""
-    match bound:
-        case Ge(ge=low):
-            return bool(value >= low)  # type: ignore[operator]
-        case Gt(gt=low):
-            return bool(value > low)  # type: ignore[operator]
-        case Le(le=high):
-            return bool(value <= high)  # type: ignore[operator]
-        case Lt(lt=high):
-            return bool(value < high)  # type: ignore[operator]
-    return True
+    return all(
+        holds(value, getattr(bound, limit)) for kind, limit, holds, _ in _BOUNDS if isinstance(bound, kind)
+    )
 
 
 def _told(bound: object) -> str:
     """Return a bound in words."""
-    match bound:
-        case Ge(ge=low):
-            return f"at least {low:g}"  # type: ignore[str-format]
-        case Gt(gt=low):
-            return f"more than {low:g}"  # type: ignore[str-format]
-        case Le(le=high):
-            return f"at most {high:g}"  # type: ignore[str-format]
-        case Lt(lt=high):
-            return f"less than {high:g}"  # type: ignore[str-format]
+    for kind, limit, _, words in _BOUNDS:
+        if isinstance(bound, kind):
+            return f"{words} {getattr(bound, limit):g}"
     return str(bound)

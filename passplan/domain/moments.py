@@ -85,12 +85,11 @@ def week_start(week: str) -> datetime:
     """
     match = _WEEK.fullmatch(week)
     try:
-        if match is None:
-            raise ValueError
-        monday = date.fromisocalendar(int(match[1]), int(match[2]), 1)
+        monday = date.fromisocalendar(int(match[1]), int(match[2]), 1) if match else None
     except ValueError:
-        told = f"{week!r} is not an ISO week; write it like 2026-W50 (a year has 52 or 53)"
-        raise PassplanError(told) from None
+        monday = None
+    if monday is None:
+        raise PassplanError(f"{week!r} is not an ISO week; write it like 2026-W50 (a year has 52 or 53)")
     return datetime.combine(monday, time(), tzinfo=UTC)
 
 
@@ -158,7 +157,7 @@ class Outage(Checked):
 def aware_faults(noun: object, begin: str, end: str) -> list[tuple[str, object, str]]:
     """Return faults of two optional moments that must carry a zone and stand in order."""
     first, last = getattr(noun, begin), getattr(noun, end)
-    naive = [
+    naive: list[tuple[str, object, str]] = [
         (name, str(value), "needs a zone: write it in UTC with a Z, 2026-12-07T05:12:00Z")
         for name, value in ((begin, first), (end, last))
         if value is not None and value.tzinfo is None

@@ -137,9 +137,8 @@ def occurrences(commands: tuple[Command, ...], horizon: Horizon) -> tuple[Comman
             earliest = max(filter(None, (begin, command.earliest_utc)))
             deadline = min(filter(None, (begin + timedelta(days=1), command.deadline_utc)))
             if deadline > earliest:
-                after = tuple(
-                    replace(link, command=_dated(link.command, horizon, day)) if link.command in daily else link
-                    for link in command.after
+                after = plain + tuple(
+                    replace(link, command=_dated(link.command, horizon, day)) for link in dated
                 )
                 result.append(
                     replace(

@@ -1,6 +1,7 @@
 """A ground station: place, horizon, antenna, radio, hours."""
 
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Annotated
 from zoneinfo import ZoneInfo
 
@@ -11,7 +12,6 @@ from passplan.domain.checked import (
     Checked,
     Decibel,
     Elevation,
-    Fraction,
     Loss,
     Seconds,
     code_fault,
@@ -61,7 +61,7 @@ class FixedAntenna(Checked):
         elevations = [row[0] for row in self.gain_table]
         if not elevations:
             return [("gain_table", self.gain_table, "needs at least one [elevation, gain] pair")]
-        if any(b <= a for a, b in zip(elevations, elevations[1:], strict=False)):
+        if any(b <= a for a, b in pairwise(elevations)):
             return [("gain_table", elevations, "elevations must rise from pair to pair")]
         return []
 
@@ -132,9 +132,10 @@ class Station(Checked):
         faults = text_fault("name", self.name) + code_fault("code", self.code)
         faults += zone_fault("time_zone", self.time_zone)
         azimuths = [pair[0] for pair in self.mask]
-        for index, (before, after) in enumerate(zip(azimuths, azimuths[1:], strict=False)):
+        for index, (before, after) in enumerate(pairwise(azimuths)):
             if after <= before:
-                faults.append((f"mask[{index + 1}]", after, f"azimuths must rise; the pair before has {before:g}"))
+                told = f"azimuths must rise; the pair before has {before:g}"
+                faults.append((f"mask[{index + 1}]", after, told))
         if (self.rotator is None) == (self.fixed_antenna is None):
             faults.append(("rotator", "", "give either a [rotator] or a [fixed_antenna], one of the two"))
         return faults
@@ -149,14 +150,16 @@ class Station(Checked):
         """The mask and the least receive elevation in one: (azimuth deg, elevation deg) corners.
 
         Azimuths rise within [0, 360]; straight lines between corners and across north.
-        One corner stands for a flat horizon. A pass is a stretch above this line.
+        One corner stands for a flat horizon. A pass is a stretch above this line. With no
+        mask it is never under 0 deg: who sees lower than that says so with a mask.
         """
         least = self.least_receive_elevation_deg
         if len(self.mask) < 2 or all(high <= least for _, high in self.mask):
-            return ((0.0, max([least, *(high for _, high in self.mask)])),)
+            highest = max((high for _, high in self.mask), default=0.0)
+            return ((0.0, max(least, highest)),)
         corners: list[tuple[float, float]] = []
         ring = [*self.mask, (self.mask[0][0] + 360.0, self.mask[0][1])]
-        for (azimuth, low), (after, high) in zip(ring, ring[1:], strict=False):
+        for (azimuth, low), (after, high) in pairwise(ring):
             corners.append((azimuth % 360.0, max(low, least)))
             if (low - least) * (high - least) < 0.0:
                 crossing = azimuth + (after - azimuth) * (least - low) / (high - low)

@@ -18,6 +18,7 @@ from passplan.schedule.rows_people import people_rows
 from passplan.schedule.rows_requests import request_rows
 from passplan.schedule.rows_store import store_rows
 from passplan.schedule.steps import (
+    PROVEN_GAP,
     Step,
     burden_steps,
     contacts_step,
@@ -33,7 +34,6 @@ from passplan.schedule.steps import (
 from passplan.schedule.variables import Variables, variables
 
 Tell = Callable[[str], None]
-_GAP = 1e-4
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -99,7 +99,7 @@ class Chain:
         value = step.value(self.values)
         bound = _bound(step, answer, value)
         if report:
-            self.done.append((step, value, bound, abs(bound - value) <= _GAP * max(1.0, abs(value))))
+            self.done.append((step, value, bound, abs(bound - value) <= PROVEN_GAP * max(1.0, abs(value))))
         step.hold(self.model, value, slack=max(1e-4 if step.whole else 1e-6, 1e-7 * abs(value)))
         return True
 
@@ -124,7 +124,7 @@ class Chain:
             maximise=step.maximise,
             seconds=seconds,
             solver=self.solver,
-            gap=_GAP / 2.0,
+            gap=step.gap,
             whole=step.whole,
             hint=self.values,
         )
@@ -239,8 +239,8 @@ def _chain(problem: Problem, ends: float, solver: Solver, tell: Tell, *, charge:
             value=value,
             bound=bound,
             give=step.give(value),
-            # The fairest share has a column of its own, which only the chain's model has.
-            kept=step.value(values if max(step.objective, default=0) < len(values) else chain.values),
+            # The fairest share has a column of its own, which no other model has.
+            kept=step.value(values) if max(step.objective, default=0) < len(model.lower) else value,
             proven=proven and not interrupted,
         )
         for step, value, bound, proven in chain.done
@@ -313,19 +313,31 @@ def _idle_columns(problem: Problem, names: Variables) -> list[int]:
 
 
 def _share_out(chain: Chain) -> None:
-    """With the contacts fixed, share the duties fairly, twice, then settle who among equals."""
+    """With the contacts fixed, share the duties fairly, twice, then settle who among equals.
+
+    Only people are left to decide, so a model of their rows alone is enough.
+    """
     problem, names, values = chain.problem, chain.names, chain.values
-    held = [column for options in names.x for column in options]
-    held += [column for starts in names.run for column in starts]
-    for column in held:
-        chain.model.fix(column, round(float(values[column])))
-    step = fairness_rows(problem, chain.model, names, {})
-    if chain.take(step):
-        largest = chain.done[-1][1]
-        fixed = _at_most(chain, largest)
-        more = fairness_rows(problem, chain.model, names, fixed)
-        chain.take(more, report=False)
-    chain.take(people_step(problem, names), report=False)
+    small = Model()
+    people = variables(problem, small)
+    shared = len(small.lower)
+    people_rows(problem, small, people)
+    for column in set(names.integers()) - {c for row in names.y for c in row.values()}:
+        small.fix(column, round(float(values[column])))
+    found = {step.name: value for step, value, _, _ in chain.done}
+    for step in burden_steps(problem, people):
+        if step.name in found:
+            step.hold(small, found[step.name], slack=1e-4)
+    sharing = replace(chain, model=small, names=people, done=[], values=values[:shared])
+    if sharing.take(fairness_rows(problem, small, people, {})):
+        chain.done.append(sharing.done[-1])
+        fixed = _at_most(sharing, sharing.done[-1][1])
+        sharing.take(fairness_rows(problem, small, people, fixed), report=False)
+    sharing.take(people_step(problem, people), report=False)
+    chain.values = values.copy()
+    for row in names.y:
+        for column in row.values():
+            chain.values[column] = sharing.values[column]
 
 
 def _at_most(chain: Chain, largest: float) -> dict[int, float]:

@@ -15,6 +15,7 @@ Objective = dict[int, float]
 # Night duty is counted in quarter hours begun: a count proves in a fraction of the time
 # that minutes take, and nobody sleeps differently for it.
 QUARTER_MIN = 15.0
+PROVEN_GAP = 1e-4
 
 
 def nothing(_: float) -> float:
@@ -32,6 +33,7 @@ class Step:
         maximise: direction.
         give: how much of a value the later steps may give away.
         whole: the objective is a count, so a bound proves a whole number.
+        gap: relative gap at which the solve may stop.
         ideal: value no plan can better, known beforehand; None when there is none.
     """
 
@@ -41,6 +43,7 @@ class Step:
     maximise: bool
     give: Callable[[float], float] = nothing
     whole: bool = False
+    gap: float = 0.9 * PROVEN_GAP
     ideal: float | None = None
 
     def value(self, columns: object) -> float:
@@ -162,7 +165,7 @@ def contacts_step(problem: Problem, names: Variables) -> Step:
     columns = [column for options in names.x for column in options]
     scale = 1.0 / (10.0 * len(columns) + 1.0)
     objective = {column: 1.0 + place * scale for place, column in enumerate(columns)}
-    return Step("fewest contacts", "contacts", objective, maximise=False)
+    return Step("fewest contacts", "contacts", objective, maximise=False, gap=0.005)
 
 
 def offered_min(problem: Problem, until_s: float = math.inf) -> list[float]:

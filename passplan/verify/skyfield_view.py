@@ -126,10 +126,10 @@ def view(body: EarthSatellite, station: Station, horizon: Horizon, begin_s: int,
 
 
 def horizon_deg(station: Station, azimuth_deg: Floats) -> Floats:
-    """Return the elevation that counts as the horizon at each azimuth: mask or least to receive."""
+    """Return the elevation that counts as the horizon at each azimuth: mask (none is 0) or least to receive."""
     least = station.least_receive_elevation_deg
     if not station.mask:
-        return np.full(np.shape(azimuth_deg), least)
+        return np.full(np.shape(azimuth_deg), max(least, 0.0))
     turns = [(azimuth + turn, high) for turn in (-360.0, 0.0, 360.0) for azimuth, high in station.mask]
     corners = np.array(turns)
     return np.asarray(np.maximum(least, np.interp(azimuth_deg, corners[:, 0], corners[:, 1])))
