@@ -95,9 +95,10 @@ def _limits(noun: type) -> dict[str, tuple[object, ...]]:
 
 def _metadata(hint: Hint) -> list[object]:
     """Return the limits in a type hint, also inside an optional one."""
-    if get_origin(hint) is Annotated:
+    origin: object = get_origin(hint)
+    if origin is Annotated:
         return list(hint.__metadata__)
-    if get_origin(hint) is tuple:
+    if origin is tuple:
         return []
     return [item for part in get_args(hint) for item in _metadata(part)]
 

@@ -1,5 +1,6 @@
 """What is wanted of the week: commands to send and payload sessions to run."""
 
+from collections.abc import Iterator
 from dataclasses import dataclass, replace
 from datetime import datetime, timedelta
 from typing import Annotated, Literal
@@ -13,6 +14,7 @@ from passplan.domain.checked import (
     NotNegative,
     text_fault,
 )
+from passplan.domain.constants import DAY_S
 from passplan.domain.moments import Horizon, aware_faults
 from passplan.domain.satellite import Weight
 
@@ -121,45 +123,49 @@ def occurrences(commands: tuple[Command, ...], horizon: Horizon) -> tuple[Comman
     "clock 2026-12-07"; of another daily one it depends on that of the same day. A day's
     one outside its own [earliest, deadline] is left out.
     """
-    daily = {command.name for command in commands if command.every_day}
-    days = range(int(-(-horizon.end_s // 86_400)))
+    daily = frozenset(command.name for command in commands if command.every_day)
     result: list[Command] = []
     for command in commands:
-        if not command.every_day:
-            plain = tuple(link for link in command.after if link.command not in daily)
-            dated = [link for link in command.after if link.command in daily]
-            first = {link: _first_day(command, horizon) for link in dated}
-            named = tuple(replace(link, command=_dated(link.command, horizon, first[link])) for link in dated)
-            result.append(replace(command, after=plain + named))
-            continue
-        for day in days:
-            begin = horizon.utc(day * 86_400.0)
-            earliest = max(filter(None, (begin, command.earliest_utc)))
-            deadline = min(filter(None, (begin + timedelta(days=1), command.deadline_utc)))
-            if deadline > earliest:
-                after = plain + tuple(
-                    replace(link, command=_dated(link.command, horizon, day)) for link in dated
-                )
-                result.append(
-                    replace(
-                        command,
-                        name=_dated(command.name, horizon, day),
-                        earliest_utc=earliest,
-                        deadline_utc=deadline,
-                        every_day=False,
-                        after=after,
-                    )
-                )
+        if command.every_day:
+            result += _each_day(command, daily, horizon)
+        else:
+            day = _first_day(command, horizon)
+            result.append(replace(command, after=_after(command, daily, horizon, day)))
     return tuple(result)
+
+
+def _each_day(command: Command, daily: frozenset[str], horizon: Horizon) -> Iterator[Command]:
+    """Yield a daily command's occurrence on each UTC day of the horizon that leaves it any time."""
+    for day in range(int(-(-horizon.end_s // DAY_S))):
+        begin = horizon.utc(day * DAY_S)
+        earliest = max(filter(None, (begin, command.earliest_utc)))
+        deadline = min(filter(None, (begin + timedelta(days=1), command.deadline_utc)))
+        if deadline > earliest:
+            yield replace(
+                command,
+                name=_dated(command.name, horizon, day),
+                earliest_utc=earliest,
+                deadline_utc=deadline,
+                every_day=False,
+                after=_after(command, daily, horizon, day),
+            )
+
+
+def _after(command: Command, daily: frozenset[str], horizon: Horizon, day: int) -> tuple[After, ...]:
+    """Return what a command depends on, daily ones named with the day."""
+    return tuple(
+        replace(link, command=_dated(link.command, horizon, day)) if link.command in daily else link
+        for link in command.after
+    )
 
 
 def _first_day(command: Command, horizon: Horizon) -> int:
     """Return the day of the horizon in which a single command may first go."""
     if command.earliest_utc is None:
         return 0
-    return max(0, int(horizon.seconds(command.earliest_utc) // 86_400))
+    return max(0, int(horizon.seconds(command.earliest_utc) // DAY_S))
 
 
 def _dated(name: str, horizon: Horizon, day: int) -> str:
     """Return a daily command's name on one day of the horizon."""
-    return f"{name} {horizon.utc(day * 86_400.0):%Y-%m-%d}"
+    return f"{name} {horizon.utc(day * DAY_S):%Y-%m-%d}"

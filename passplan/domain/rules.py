@@ -13,7 +13,7 @@ class Rule(Enum):
     IN_VIEW = "The satellite stands above the station's mask and least elevations all through the contact."
     GUARD_TIME = "Contacts keep off both ends of the pass by the guard time, as elements age."
     ANTENNA_FOLLOWS = "The antenna can follow the satellite all through the contact."
-    LINK_CLOSES = "Data flow only while the downlink closes with its margin, commands only while the uplink does."
+    LINK_CLOSES = "Data flow only while the downlink closes with its margin, commands while the uplink does."
     STATION_OPEN = "The station is open and not in an outage."
     SATELLITE_OPEN = "The satellite is not closed to contacts."
     LEAST_CONTACT = "A contact is long enough to be worth sitting down for."

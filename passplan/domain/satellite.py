@@ -217,21 +217,25 @@ class Store(Checked):
     kinds: tuple[DataKind, ...]
 
     def _faults(self) -> list[tuple[str, object, str]]:
-        faults: list[tuple[str, object, str]] = []
         known = [part.name for part in self.partitions]
-        names = [kind.name for kind in self.kinds]
-        faults += [("partitions", name, "is there twice") for name in sorted({n for n in known if known.count(n) > 1})]
-        faults += [("kinds", name, "is there twice") for name in sorted({n for n in names if names.count(n) > 1})]
+        faults = _twice("partitions", known) + _twice("kinds", [kind.name for kind in self.kinds])
+        there = ", ".join(known) or "none"
         faults += [
-            ("kinds", kind.partition, f"{kind.name}: no such partition; there are: {', '.join(known) or 'none'}")
+            ("kinds", kind.partition, f"{kind.name}: no such partition; there are: {there}")
             for kind in self.kinds
             if kind.partition not in known
         ]
         for part in self.partitions:
             held = sum(kind.on_board_byte for kind in self.kinds if kind.partition == part.name)
             if held > part.size_byte:
-                faults.append(("partitions", part.name, f"holds {held:g} byte at the start, more than its size"))
+                told = f"holds {held:g} byte at the start, more than its size"
+                faults.append(("partitions", part.name, told))
         return faults
+
+
+def _twice(key: str, names: list[str]) -> list[tuple[str, object, str]]:
+    """Return a fault of each name that is given more than once."""
+    return [(key, name, "is there twice") for name in sorted({n for n in names if names.count(n) > 1})]
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)

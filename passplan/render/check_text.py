@@ -50,11 +50,11 @@ def check_text(
 def _add_mistake(page: Page, mistake: Mistake) -> None:
     """Add one mistake: where, what stands there, what is allowed."""
     where = safe(mistake.key)
-    shown = f"{safe(mistake.text)!r}" if mistake.text else ""
-    page.sentences(": ".join(filter(None, (where, shown))) or "the file", indent=2, style=STRONG)
-    told, *shown = mistake.allowed.split("\n")
+    text = f"{safe(mistake.text)!r}" if mistake.text else ""
+    page.sentences(": ".join(filter(None, (where, text))) or "the file", indent=2, style=STRONG)
+    told, *lines = mistake.allowed.split("\n")
     page.sentences(*_whole(told), indent=4)
-    for line in shown:  # the line of a file and a caret under it: the columns count
+    for line in lines:  # the line of a file and a caret under it: the columns count
         page.line("".join(char if char.isprintable() else "?" for char in line))
 
 

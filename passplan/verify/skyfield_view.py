@@ -126,7 +126,7 @@ def view(body: EarthSatellite, station: Station, horizon: Horizon, begin_s: int,
 
 
 def horizon_deg(station: Station, azimuth_deg: Floats) -> Floats:
-    """Return the elevation that counts as the horizon at each azimuth: mask (none is 0) or least to receive."""
+    """Return the elevation that counts as the horizon at each azimuth: mask (none = 0) or least elevation."""
     least = station.least_receive_elevation_deg
     if not station.mask:
         return np.full(np.shape(azimuth_deg), max(least, 0.0))
