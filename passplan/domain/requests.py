@@ -1,8 +1,8 @@
 """What is wanted of the week: commands to send and payload sessions to run."""
 
-from collections.abc import Iterator
+import math
 from dataclasses import dataclass, replace
-from datetime import datetime, timedelta
+from datetime import datetime
 from typing import Annotated, Literal
 
 from annotated_types import Interval
@@ -120,43 +120,59 @@ def occurrences(commands: tuple[Command, ...], horizon: Horizon) -> tuple[Comman
     """Return the commands of one horizon: those of every day once a day, the rest as they are.
 
     A daily command becomes one for each UTC day of the week and the look-ahead, named
-    "clock 2026-12-07"; of another daily one it depends on that of the same day. A day's
-    one outside its own [earliest, deadline] is left out.
+    "clock 2026-12-07"; a day's one outside its own [earliest, deadline] is left out.
+    What depends on a daily command depends on that of the same day (for a single
+    command the first day it may go), else on the last one before, else on the first
+    one after; where the horizon has none, there is nothing to wait for.
     """
-    daily = frozenset(command.name for command in commands if command.every_day)
+    days = {command.name: _days(command, horizon) for command in commands if command.every_day}
     result: list[Command] = []
     for command in commands:
         if command.every_day:
-            result += _each_day(command, daily, horizon)
+            result += [_on_day(command, days, horizon, day) for day in days[command.name]]
         else:
             day = _first_day(command, horizon)
-            result.append(replace(command, after=_after(command, daily, horizon, day)))
+            result.append(replace(command, after=_after(command, days, horizon, day)))
     return tuple(result)
 
 
-def _each_day(command: Command, daily: frozenset[str], horizon: Horizon) -> Iterator[Command]:
-    """Yield a daily command's occurrence on each UTC day of the horizon that leaves it any time."""
-    for day in range(int(-(-horizon.end_s // DAY_S))):
-        begin = horizon.utc(day * DAY_S)
-        earliest = max(filter(None, (begin, command.earliest_utc)))
-        deadline = min(filter(None, (begin + timedelta(days=1), command.deadline_utc)))
-        if deadline > earliest:
-            yield replace(
-                command,
-                name=_dated(command.name, horizon, day),
-                earliest_utc=earliest,
-                deadline_utc=deadline,
-                every_day=False,
-                after=_after(command, daily, horizon, day),
-            )
+def _days(command: Command, horizon: Horizon) -> list[int]:
+    """Return the UTC days of the horizon (0 = Monday) that leave a daily command any time."""
+    within = [_within(command, horizon, day) for day in range(math.ceil(horizon.end_s / DAY_S))]
+    return [day for day, (earliest, deadline) in enumerate(within) if earliest < deadline]
 
 
-def _after(command: Command, daily: frozenset[str], horizon: Horizon, day: int) -> tuple[After, ...]:
-    """Return what a command depends on, daily ones named with the day."""
-    return tuple(
-        replace(link, command=_dated(link.command, horizon, day)) if link.command in daily else link
-        for link in command.after
+def _within(command: Command, horizon: Horizon, day: int) -> tuple[datetime, datetime]:
+    """Return between which moments a daily command goes up on one day."""
+    begin, end = horizon.utc(day * DAY_S), horizon.utc((day + 1) * DAY_S)
+    earliest = max(filter(None, (begin, command.earliest_utc)))
+    deadline = min(filter(None, (end, command.deadline_utc)))
+    return earliest, deadline
+
+
+def _on_day(command: Command, days: dict[str, list[int]], horizon: Horizon, day: int) -> Command:
+    """Return a daily command's occurrence on one day."""
+    earliest, deadline = _within(command, horizon, day)
+    return replace(
+        command,
+        name=_dated(command.name, horizon, day),
+        earliest_utc=earliest,
+        deadline_utc=deadline,
+        every_day=False,
+        after=_after(command, days, horizon, day),
     )
+
+
+def _after(command: Command, days: dict[str, list[int]], horizon: Horizon, day: int) -> tuple[After, ...]:
+    """Return what a command depends on, daily ones named with a day."""
+    found = []
+    for link in command.after:
+        if link.command not in days:
+            found.append(link)
+        elif there := days[link.command]:
+            on = max((each for each in there if each <= day), default=there[0])
+            found.append(replace(link, command=_dated(link.command, horizon, on)))
+    return tuple(found)
 
 
 def _first_day(command: Command, horizon: Horizon) -> int:
