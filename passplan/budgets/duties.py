@@ -8,6 +8,9 @@ from passplan.domain.moments import Horizon, Span, away_spans, local, weekly_spa
 from passplan.domain.passes import Pass
 from passplan.domain.people import Operator
 from passplan.domain.problem import Duty, Option
+from passplan.domain.rules import Rule
+
+RULES = frozenset({Rule.OPERATOR_STATION, Rule.OPERATOR_HOURS})  # kept by offering no other duty
 
 
 def free_spans(operator: Operator, horizon: Horizon) -> list[Span]:

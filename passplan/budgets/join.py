@@ -31,7 +31,11 @@ from passplan.domain.problem import (
     WantedSession,
 )
 from passplan.domain.requests import Command, occurrences
+from passplan.domain.rules import Rule
 from passplan.domain.satellite import Satellite
+
+# Kept by offering no other pass and no other place for a command.
+RULES = frozenset({Rule.COMMAND_LENGTH, Rule.COMMAND_STATION, Rule.DISCHARGE_LIMIT})
 
 
 def join(mission: Mission, horizon: Horizon, sky: Sky, tracks: Sequence[Track]) -> Problem:

@@ -7,6 +7,9 @@ import numpy as np
 from passplan.budgets.usable import Run
 from passplan.domain.mission import Mission
 from passplan.domain.problem import Option, Slice
+from passplan.domain.rules import Rule
+
+RULES = frozenset({Rule.LEAST_CONTACT})  # kept by offering nothing shorter
 
 # A hand-over is offered where it covers this much more time than one of the two alone.
 _LEAST_GAIN_S = 60

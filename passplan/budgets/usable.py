@@ -11,8 +11,21 @@ from passplan.budgets.link import goodput_byte_s, uplink_margin_db
 from passplan.domain.mission import Mission
 from passplan.domain.moments import Horizon, Span, merged, outage_spans, weekly_spans, without
 from passplan.domain.passes import Floats, Pass, Track
+from passplan.domain.rules import Rule
 from passplan.domain.satellite import Satellite
 from passplan.domain.station import Station
+
+# Kept by offering nothing else: what breaks one of these is no part of a run.
+RULES = frozenset(
+    {
+        Rule.IN_VIEW,
+        Rule.GUARD_TIME,
+        Rule.ANTENNA_FOLLOWS,
+        Rule.LINK_CLOSES,
+        Rule.STATION_OPEN,
+        Rule.SATELLITE_OPEN,
+    }
+)
 
 MARGIN_S = 0.5
 MARGIN_DEG = 0.05
@@ -84,7 +97,7 @@ class Run:
 def horizon_deg(station: Station, azimuth_deg: Floats) -> Floats:
     """Return the station's horizon at each azimuth, straight lines between its corners."""
     corners = np.array(station.horizon)
-    return np.interp(azimuth_deg, corners[:, 0], corners[:, 1], period=360.0)
+    return np.asarray(np.interp(azimuth_deg, corners[:, 0], corners[:, 1], period=360.0))
 
 
 def open_spans(station: Station, satellite: Satellite, horizon: Horizon) -> list[Span]:

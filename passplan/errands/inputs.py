@@ -9,11 +9,14 @@ from passplan.domain.elements import ElementSet
 from passplan.domain.errors import InputError, Mistake
 from passplan.domain.mission import Mission
 from passplan.domain.moments import Horizon, week_after, week_start
+from passplan.domain.rules import Rule
 from passplan.errands.desk import Desk
 from passplan.render.words import safe
 from passplan.workspace.element_choice import age_days, choose, file_of
 from passplan.workspace.element_files import read_folder
 from passplan.workspace.read import read_workspace
+
+RULES = frozenset({Rule.ELEMENTS_AGE})  # kept by refusing to begin
 
 ELEMENTS = "elements"
 
