@@ -57,7 +57,13 @@ class Planning(Checked):
 
 @dataclass(frozen=True, kw_only=True, slots=True)
 class Gives(Checked):
-    """How much of a step may be given away for the people's sake."""
+    """How much of a step may be given away for the people's sake.
+
+    Attributes:
+        worth_fraction: of the most worth there is.
+        sittings: more than the fewest.
+        night_min: minutes of night duty more than the least, in whole quarter hours.
+    """
 
     worth_fraction: Annotated[float, Interval(ge=0.0, le=0.5)] = 0.03
     sittings: NotNegative = 0.0
@@ -89,6 +95,7 @@ class Mission(Checked):
     """All that people wrote.
 
     Attributes:
+        name: for plans and calendars.
         pinned_week: ISO week planned when none is named; None = the next one.
         pinned_elements: satellite name to the file name of the element set to use.
     """

@@ -15,7 +15,9 @@ class Operator(Checked):
         handle: call sign or the name used in the plan.
         stations: codes of the stations they serve.
         may_control: licensed, and designated by the satellite's licensee; False = receives only.
+        time_zone: IANA name, such as "Europe/Dublin".
         hours: weekly hours in their own zone; empty = none, they take no duty.
+        away: whole days of their zone without any duty.
         most_duties_day: duties begun in one calendar day of their zone.
         most_duties_week: duties begun in one ISO week, in UTC.
         rest_h: free hours between two sittings.

@@ -45,9 +45,11 @@ class Command(Checked):
             None works it out from `length_byte`.
         length_byte: octets of the command itself.
         earliest_utc, deadline_utc: the whole exchange lies between; None = the week.
-        must: it has no worth, it has to go; urgent musts also go as early as they can.
+        must: it has no worth, it has to go.
+        urgent: a must that also goes as early as it can.
         worth: low 100, normal 300, high 1000, or a number, when it is not a must.
         after: other commands that have to be up before.
+        least_elevation_deg: of the satellite all through its exchange; None = the station's own.
         least_charge_fraction: battery charge where its contact begins, of the capacity.
         every_day: it is wanted once each day of the week (UTC), named with the date.
         stations: codes allowed; empty = every transmitting station.
@@ -93,6 +95,8 @@ class Session(Checked):
     """One run of the payload; the planner decides whether and when in its windows.
 
     Attributes:
+        satellite: whose payload.
+        windows: it lies wholly inside one of them.
         length_s: how long it runs.
         draw_w: what it adds to the bus load.
         makes: bytes it makes by kind of data.

@@ -72,14 +72,21 @@ class Radio(Checked):
     """The half-duplex radio.
 
     Attributes:
+        down_hz, up_hz: carrier.
+        bit_rate_bit_s: on the air, the same both ways.
         required_ebn0_db: Eb/N0 at which the bit error rate is 1e-5 through the real
             receivers, measured or from a data sheet; None takes the closed form of
             `modulation` plus `implementation_loss_db`.
+        implementation_loss_db: what real receivers lose against the closed form.
         scrambled: a self-synchronising scrambler turns one channel error into three.
+        transmit_power_w: RF power at the transmitter's output.
+        line_loss_db: between radio and antenna.
+        antenna_gain_dbi: mean over what the attitude does to it.
         receive_sensitivity_dbm: power at the satellite's receiver input at which the
             required Eb/N0 is just met.
         turn_round_s: from listening to speaking or back, each time.
         expected_repeats: how often an exchange is repeated on average, 0.5 = every second.
+        beacon: what it says unasked; None = nothing.
     """
 
     down_hz: Annotated[float, Interval(ge=1e6, le=1e11)]
@@ -151,8 +158,10 @@ class Battery(Checked):
         health_fraction: share of it that is left.
         floor_fraction: never below, of the capacity left.
         transmit_floor_fraction: no contact begins below this.
+        charge_efficiency, discharge_efficiency: energy out by energy in, on the way to and from the cells.
         charge_limit_w: most the cells may take; None = no limit of their own.
         discharge_limit_w: most they may give; None = no limit of their own.
+        telemetry: the last charge read; None = the week begins at the mission's end_fraction.
     """
 
     capacity_wh: Annotated[float, Interval(gt=0.0, le=100_000.0)]
@@ -202,7 +211,11 @@ class DataKind(Checked):
 
 @dataclass(frozen=True, kw_only=True, slots=True)
 class Partition(Checked):
-    """A part of the store, and what happens when it is full."""
+    """A part of the store, and what happens when it is full.
+
+    Attributes:
+        when_full: "refuse" loses what is being made, "overwrite_oldest" what is oldest on board.
+    """
 
     name: str
     size_byte: Positive
@@ -240,7 +253,12 @@ def _twice(key: str, names: list[str]) -> list[tuple[str, object, str]]:
 
 @dataclass(frozen=True, kw_only=True, slots=True)
 class Satellite(Checked):
-    """One satellite; `number` is None while it has no catalogue number."""
+    """One satellite.
+
+    Attributes:
+        number: catalogue number; None = it has none yet and is found by its name.
+        closed: when nobody may have a contact with it.
+    """
 
     name: str
     number: Annotated[int, Interval(ge=1, le=999_999_999)] | None = None

@@ -102,12 +102,17 @@ class Station(Checked):
 
     Attributes:
         code: short and capital, the first part of every contact's name.
+        latitude_deg, longitude_deg: WGS 84, north and east positive.
+        altitude_m: above the ellipsoid.
+        time_zone: IANA name, such as "Europe/Dublin".
         mask: (azimuth deg, least elevation deg) in rising azimuth, straight lines
             between and across north; empty = flat at 0 deg. May be negative.
         least_receive_elevation_deg: never used below, whatever the mask says.
         least_transmit_elevation_deg: never transmits below.
+        rotator, fixed_antenna: one of the two.
         set_up_s: between the end of one contact and the start of the next.
         hours: weekly hours in the station's zone; empty = always.
+        outages: when it cannot be used.
         success_fraction: chance that a contact works here; None takes the mission's.
     """
 

@@ -88,5 +88,13 @@ def _told(docstring: str) -> tuple[str, dict[str, str]]:
     head, _, rest = docstring.partition("\n\nAttributes:\n")
     told = {}
     for names, words in _ATTRIBUTE.findall(rest):
-        told.update(dict.fromkeys(names.split(", "), " ".join(words.split())))
+        told.update(dict.fromkeys(names.split(", "), _in_toml(" ".join(words.split()))))
     return head, told
+
+
+def _in_toml(words: str) -> str:
+    """Return what a docstring says in the words of a file, which has no None, no True and no False."""
+    words = re.sub(r"\bNone = ", "left out: ", words)
+    words = re.sub(r"(?<=\. )None (?=[a-z])", "Left out, it ", words)
+    words = re.sub(r"\bNone (?=[a-z])", "left out, it ", words)
+    return re.sub(r"\b(?:True|False)\b", lambda match: match[0].lower(), words)
