@@ -45,9 +45,7 @@ def rates_of(kind: WeekKind) -> Iterator[None]:
         yield
 
 
-def joined_week(
-    kind: WeekKind, seed: int, *, stations: int = 8, give_fraction: float | None = None
-) -> Week:
+def joined_week(kind: WeekKind, seed: int, *, stations: int = 8, give_fraction: float | None = None) -> Week:
     """Return one generated week of one satellite.
 
     Args:
@@ -63,6 +61,4 @@ def joined_week(
     sky, ways = sky_of(mission, horizon, elements)
     with rates_of(kind):
         problem = join(mission, horizon, sky, ways)
-    return Week(
-        mission=mission, horizon=horizon, elements=elements, sky=sky, tracks=ways, problem=problem
-    )
+    return Week(mission=mission, horizon=horizon, elements=elements, sky=sky, tracks=ways, problem=problem)

@@ -4,8 +4,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import replace
 
 from passplan.budgets.usable import MARGIN_FRACTION
-from passplan.domain.mission import Mission
-from passplan.domain.passes import Sky, Track
+from passplan.domain.passes import Track
 from passplan.domain.plan import Slot
 from passplan.domain.problem import OfferedPass, Option, Problem
 from passplan.schedule.layout import LaidOut
@@ -13,48 +12,39 @@ from passplan.schedule.ledger import play
 from passplan.schedule.outcome import Outcome, loads
 from passplan.schedule.stock import carry
 from passplan.schedule.variables import DataClass, data_classes
+from tests.planning_weeks import Week
 from tests.rough_sky import UsablePass
 from tests.rule_of_thumb import Choice, best_elevation_first
 
 Tracks = Mapping[tuple[str, str, int], Track]
 
 
-def thumb_choices(
-    mission: Mission, problem: Problem, sky: Sky, tracks: Sequence[Track], *, uplink_by_peak: bool = False
-) -> list[Choice]:
-    """Return what best elevation first takes of the passes that the optimiser is offered.
+def thumb_choices(week: Week, *, uplink_by_peak: bool = False) -> list[Choice]:
+    """Return what best elevation first takes of the passes that the optimiser is offered, whole ones.
 
     Both keep the same margin above the floors. On the charge wanted at the end the optimiser
     keeps none, so it is taken off for the thumb as well.
-
-    Args:
-        mission: what the problem was joined from.
-        problem: whose passes, whole ones, are offered.
-        sky: for the shadows.
-        tracks: one for each pass of `sky`, in its order.
-        uplink_by_peak: let no uplink slot reach beyond the peak of its pass.
     """
-    found = {
-        (sight.satellite, sight.station, track.start_s): track
-        for sight, track in zip(sky.passes, tracks, strict=True)
-    }
-    planning = replace(mission.planning, end_fraction=mission.planning.end_fraction - MARGIN_FRACTION)
+    sights = zip(week.sky.passes, week.tracks, strict=True)
+    tracks = {(sight.satellite, sight.station, track.start_s): track for sight, track in sights}
+    planning = week.mission.planning
+    wanted = replace(planning, end_fraction=planning.end_fraction - MARGIN_FRACTION)
     return best_elevation_first(
-        replace(mission, planning=planning),
-        problem.horizon,
-        [usable_pass(offered, found) for offered in problem.passes],
-        sky.shadows,
-        {craft.name: craft.start_j / craft.capacity_j for craft in problem.crafts},
+        replace(week.mission, planning=wanted),
+        week.horizon,
+        [usable_pass(offered, tracks) for offered in week.problem.passes],
+        week.sky.shadows,
+        {craft.name: craft.start_j / craft.capacity_j for craft in week.problem.crafts},
         margin_fraction=MARGIN_FRACTION,
         uplink_by_peak=uplink_by_peak,
     )
 
 
-def thumb_outcome(mission: Mission, problem: Problem, choices: Sequence[Choice]) -> Outcome:
+def thumb_outcome(week: Week, choices: Sequence[Choice]) -> Outcome:
     """Return a plan by hand as the outcome that a solution would be: `worth` counts it like any other."""
+    problem = week.problem
     contacts = sorted(
-        (_laid_out(mission, problem, choice) for choice in choices),
-        key=lambda laid: (laid.option.start_s, laid.index),
+        (_laid_out(problem, choice) for choice in choices), key=lambda laid: (laid.option.start_s, laid.index)
     )
     own = [
         [laid for laid in contacts if problem.passes[laid.index].satellite == number]
@@ -69,6 +59,21 @@ def thumb_outcome(mission: Mission, problem: Problem, choices: Sequence[Choice])
             play(craft, loads(problem, number, own[number], {}))
             for number, craft in enumerate(problem.crafts)
         ),
+    )
+
+
+def best_by_hand(week: Week) -> Outcome:
+    """Return the better of two plans by hand: uplink anywhere in a pass, or not beyond its peak."""
+    plans = [thumb_choices(week, uplink_by_peak=by_peak) for by_peak in (False, True)]
+    return max((thumb_outcome(week, choices) for choices in plans), key=Outcome.worth)
+
+
+def brought_kb(made: Outcome) -> float:
+    """Return the expected kilobytes that a laid-out week brings down."""
+    return sum(
+        made.problem.passes[index].success_fraction * sum(carried.values()) / 1000.0
+        for stock in made.stocks
+        for index, carried in stock.carried.items()
     )
 
 
@@ -93,7 +98,7 @@ def whole_option(offered: OfferedPass) -> Option:
     return max(offered.options, key=lambda option: option.end_s - option.start_s)
 
 
-def _laid_out(mission: Mission, problem: Problem, choice: Choice) -> LaidOut:
+def _laid_out(problem: Problem, choice: Choice) -> LaidOut:
     """Return one choice as a laid-out contact, acquire and close included."""
     offered = problem.passes[choice.index]
     option, craft = whole_option(offered), problem.crafts[offered.satellite]
@@ -111,7 +116,7 @@ def _laid_out(mission: Mission, problem: Problem, choice: Choice) -> LaidOut:
     return LaidOut(
         index=choice.index,
         option=option,
-        operators=([person.handle for person in mission.operators].index(choice.operator),),
+        operators=([person.handle for person in problem.operators].index(choice.operator),),
         slots=tuple(slots),
         left=tuple(commands.index(slot.command) for slot in choice.uplink),
         right=(),

@@ -14,7 +14,7 @@ import subprocess
 import sys
 import tempfile
 import time
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass, field
 from datetime import UTC, datetime
@@ -22,20 +22,20 @@ from pathlib import Path
 from typing import Any, get_args
 from unittest.mock import patch
 
-from passplan import week
+from passplan import week as whole_line
+from passplan.budgets.join import join
 from passplan.domain.errors import PassplanError
 from passplan.domain.plan import Plan
-from passplan.domain.problem import Problem
 from passplan.errands.desk import Desk
 from passplan.errands.inputs import Inputs, read_inputs
-from passplan.schedule.model import Answer, Model
-from passplan.schedule.outcome import Outcome, outcome
 from passplan.schedule.solve import Solved, solve
 from passplan.verify import check
 from passplan.workspace.plans import PlanStore
+from tests.benchmarks.aloud import say
+from tests.benchmarks.two_solvers import agreement
+from tests.benchmarks.worth_over_thumb import against_thumb
 from tests.generated import WeekKind
 from tests.planning_weeks import joined_week, rates_of
-from tests.thumb_week import thumb_choices, thumb_outcome
 
 KINDS: tuple[WeekKind, ...] = get_args(WeekKind)
 
@@ -87,13 +87,8 @@ def watched() -> Iterator[Watch]:
         watch.readings_s.append(time.perf_counter() - begin)
         return verdict
 
-    with patch.object(week, "solve", solving), patch.object(week, "check", reading):
+    with patch.object(whole_line, "solve", solving), patch.object(whole_line, "check", reading):
         yield watch
-
-
-def say(line: str = "") -> None:
-    """Print a line at once."""
-    print(line, flush=True)
 
 
 # ---- the sample ----
@@ -142,7 +137,8 @@ def sample_week(folder: Path) -> None:
     say(f"  {_proof(plan)}; {len(plan.contacts)} contacts in the week, {len(plan.commands)} commands")
     for step in plan.steps:
         say(
-            f"  {step.name:34} {step.value:12.6g} {step.unit:14} bound {step.bound:12.6g} kept {step.kept:12.6g}"
+            f"  {step.name:34} {step.value:12.6g} {step.unit:14} "
+            f"bound {step.bound:12.6g} kept {step.kept:12.6g}"
         )
 
 
@@ -165,7 +161,7 @@ def plan_generated(kind: WeekKind, seed: int, limit_s: float) -> Planned | None:
     begin = time.perf_counter()
     try:
         with rates_of(kind), watched() as watch:
-            plan = week.plan_week(
+            plan = whole_line.plan_week(
                 ready.mission,
                 ready.horizon,
                 ready.elements,
@@ -203,7 +199,8 @@ def generated_weeks(pairs: list[tuple[WeekKind, int]], limit_s: float) -> None:
         worth = made.plan.worth
         give = next((step.give for step in made.plan.steps if step.name == "worth"), 0.0)
         say(
-            f"  {made.label:15} bound {worth.bound:9.1f}  best/bound {worth.best_laid_out / worth.bound:.5f}  "
+            f"  {made.label:15} bound {worth.bound:9.1f}  "
+            f"best/bound {worth.best_laid_out / worth.bound:.5f}  "
             f"plan/(best - give) {worth.laid_out / (worth.best_laid_out - give):.5f}"
         )
     say("(d) lowest charge of the week, second reading less planned; bar 0.5 % of capacity")
@@ -213,127 +210,7 @@ def generated_weeks(pairs: list[tuple[WeekKind, int]], limit_s: float) -> None:
         for battery in made.plan.batteries if verdict else ():
             seen = verdict.lowest_fraction[battery.satellite] if verdict else 0.0
             off = 100.0 * (seen - battery.lowest_fraction)
-            say(
-                f"  {made.label:15} planned {battery.lowest_fraction:.2%}  verified {seen:.2%}  {off:+.3f} %"
-            )
-
-
-# ---- against best elevation first ----
-
-
-@dataclass(frozen=True, kw_only=True, slots=True)
-class Compared:
-    """One week by the optimiser over the same by hand."""
-
-    worth_ratio: float
-    byte_ratio: float
-
-
-def brought_kb(made: Outcome) -> float:
-    """Return the expected kilobytes brought down."""
-    chances = [offered.success_fraction for offered in made.problem.passes]
-    return sum(
-        chances[index] * sum(carried.values()) / 1000.0
-        for stock in made.stocks
-        for index, carried in stock.carried.items()
-    )
-
-
-def _counted(made: Outcome) -> str:
-    """Return contacts, commands, worth and data in words."""
-    commands = sum(len(laid.commands) for laid in made.contacts)
-    return f"{len(made.contacts):3} contacts {commands:3} commands {made.worth():9.1f}"
-
-
-def compare(kind: WeekKind, seed: int, limit_s: float) -> Compared:
-    """Plan one week by hand and by the optimiser, nothing given, and print both."""
-    ready = joined_week(kind, seed, give_fraction=0.0)
-    byhand = [
-        thumb_outcome(
-            ready.mission,
-            ready.problem,
-            thumb_choices(ready.mission, ready.problem, ready.sky, ready.tracks, uplink_by_peak=by_peak),
-        )
-        for by_peak in (False, True)
-    ]
-    thumb = max(byhand, key=Outcome.worth)
-    solved = solve(ready.problem, time_limit_s=limit_s)
-    ours = outcome(ready.problem, solved.names, solved.values)
-    compared = Compared(
-        worth_ratio=ours.worth() / thumb.worth(), byte_ratio=brought_kb(ours) / brought_kb(thumb)
-    )
-    proven = all(step.proven for step in solved.steps)
-    borne = all(made.bears(number) for made in (ours, thumb) for number in range(len(made.stocks)))
-    say(
-        f"  {kind:11} {seed:2}  ours {_counted(ours)}  by hand {_counted(thumb)}  worth x {compared.worth_ratio:.4f}  "
-        f"bytes x {compared.byte_ratio:.4f}  {sum(solved.seconds.values()):5.1f} s"
-        f"{'' if proven else ', not all proven'}{'' if borne else ', A FLOOR OR THE END CHARGE IS MISSED'}"
-    )
-    return compared
-
-
-def against_thumb(pairs: list[tuple[WeekKind, int]], limit_s: float) -> None:
-    """Print worth and bytes over best elevation first, median and least."""
-    say("(e) laid-out worth over best elevation first (the better of uplink anywhere and by the peak), give 0")
-    say("    bar: 1.15 in the median of 20 easy seeds, never under 1")
-    for kind in dict.fromkeys(kind for kind, _ in pairs):
-        found = [compare(kind, seed, limit_s) for other, seed in pairs if other == kind]
-        worth, byte = [one.worth_ratio for one in found], [one.byte_ratio for one in found]
-        say(
-            f"  {kind}, {len(found)} seeds: worth median x {statistics.median(worth):.4f}, least x {min(worth):.4f}; "
-            f"bytes median x {statistics.median(byte):.4f}, least x {min(byte):.4f}"
-        )
-
-
-# ---- two solvers ----
-
-
-@contextmanager
-def both_solvers(limit_s: float, told: Callable[[Answer, Answer], None]) -> Iterator[None]:
-    """Let SCIP solve every model that HiGHS has just solved, the rows of earlier steps in it."""
-    once = Model.solve
-
-    def twice(model: Model, objective: Any, **named: Any) -> Answer:
-        named["seconds"] = min(named["seconds"], limit_s)
-        first = once(model, objective, **named)
-        if objective and not named.get("relaxed", False):
-            told(first, once(model, objective, **named | {"seconds": limit_s, "solver": "scip", "hint": None}))
-        return first
-
-    with patch.object(Model, "solve", twice):
-        yield
-
-
-def agreement(problem: Problem, limit_s: float) -> None:
-    """Print every step of the chain by both solvers, on the same model each time."""
-    say(f"(f) HiGHS and SCIP on every solve of the sample's chain, earlier values held; limit {limit_s:g} s each")
-    waiting: list[tuple[Answer, Answer]] = []
-    verdicts: list[bool] = []
-
-    def step_done(line: str) -> None:
-        for number, (first, second) in enumerate(waiting):
-            verdicts.append(_compare_answers(f"{line.partition(':')[0]} ({number + 1}/{len(waiting)})", first, second))
-        waiting.clear()
-
-    with both_solvers(limit_s, lambda first, second: waiting.append((first, second))):
-        solve(problem, time_limit_s=3600.0, tell=step_done)
-    say(f"  {sum(verdicts)} of {len(verdicts)} solves agree within the gaps")
-
-
-def _compare_answers(name: str, first: Answer, second: Answer) -> bool:
-    """Print two answers to one question and return whether they agree."""
-    if not (first.found and second.found):
-        same = first.status == second.status
-        say(f"  {name:48} HiGHS {first.status}, SCIP {second.status}")
-        return same
-    off = abs(first.value - second.value)
-    gap = max(abs(answer.bound - answer.value) for answer in (first, second))
-    allowed = gap + 1e-6 * max(1.0, abs(first.value))
-    say(
-        f"  {name:48} {first.value:13.6f} {second.value:13.6f}  off {off:.2e}, gaps {gap:.2e}  "
-        f"{first.seconds:6.1f} s {second.seconds:6.1f} s  {'agree' if off <= allowed else 'DISAGREE'}"
-    )
-    return off <= allowed
+            say(f"  {made.label:15} planned {battery.lowest_fraction:.2%}  verified {seen:.2%}  {off:+.3f} %")
 
 
 # ---- what to run ----
@@ -355,7 +232,9 @@ def kinds(told: str) -> list[WeekKind]:
 
 def arguments() -> argparse.Namespace:
     """Return what was asked for."""
-    parser = argparse.ArgumentParser(description=__doc__, formatter_class=argparse.RawDescriptionHelpFormatter)
+    parser = argparse.ArgumentParser(
+        description=__doc__, formatter_class=argparse.RawDescriptionHelpFormatter
+    )
     parser.add_argument("--kinds", type=kinds, help=f"of {', '.join(KINDS)}")
     parser.add_argument("--seeds", type=numbers, help="such as 1-5 or 1,3")
     parser.add_argument("--limit", type=float, default=120.0, metavar="S", help="of each chain of solves")
@@ -375,7 +254,8 @@ def main() -> None:
     many = asked.seeds or numbers("1-20")
     if asked.quick:
         seeds, many = seeds[:1], many[:1]
-    pairs: list[tuple[WeekKind, int]] = [(k, s) for k in asked.kinds or ("easy", "hard") for s in seeds]
+    chosen: list[WeekKind] = asked.kinds or ["easy", "hard"]
+    pairs = [(kind, seed) for kind in chosen for seed in seeds]
     if not asked.kinds:
         pairs += [("weak-link", seeds[0]), ("long-uplink", seeds[0])]
     with tempfile.TemporaryDirectory() as home:
@@ -387,11 +267,12 @@ def main() -> None:
         if everything or asked.weeks:
             generated_weeks(pairs, asked.limit)
         if everything or asked.greedy:
-            against_thumb([(kind, seed) for kind in asked.kinds or ("easy",) for seed in many], asked.limit)
+            by_hand: list[WeekKind] = asked.kinds or ["easy"]
+            against_thumb([(kind, seed) for kind in by_hand for seed in many], asked.limit)
         if everything or asked.agree:
             inputs = inputs_of(folder)
-            sky, ways = week.sky_of(inputs.mission, inputs.horizon, inputs.elements)
-            agreement(week.join(inputs.mission, inputs.horizon, sky, ways), asked.limit)
+            sky, ways = whole_line.sky_of(inputs.mission, inputs.horizon, inputs.elements)
+            agreement(join(inputs.mission, inputs.horizon, sky, ways), asked.limit)
 
 
 if __name__ == "__main__":
