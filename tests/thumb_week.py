@@ -109,7 +109,7 @@ def _laid_out(problem: Problem, choice: Choice) -> LaidOut:
         slots.append(Slot(kind="close", start_s=end, end_s=option.end_s))
     kinds = [kind.name for kind in craft.kinds]
     commands = [command.name for command in problem.commands]
-    asked_kb = dict.fromkeys(data_classes(craft, offered), 0.0)
+    asked_kb = dict.fromkeys(data_classes(problem, offered), 0.0)
     asked_kb |= {
         DataClass(kinds.index(part.kind), part.made_day): part.byte / 1000.0 for part in choice.carried
     }

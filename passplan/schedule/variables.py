@@ -87,7 +87,7 @@ def variables(problem: Problem, model: Model) -> Variables:
         if any(where == index for _, where in names.up_either):
             names.leaning[index] = model.column()
         names.t.append([model.column(0.0, part.end_s - part.start_s) for part in offered.slices])
-        classes = data_classes(problem.crafts[offered.satellite], offered)
+        classes = data_classes(problem, offered)
         names.v.append({data: model.column() for data in classes})
     for session in problem.sessions:
         names.run.append([model.binary() for _ in session.starts_s])
@@ -117,15 +117,18 @@ def _uplinks(problem: Problem, model: Model, names: Variables, index: int, comma
         names.up_right[command, index] = model.binary()
 
 
-def data_classes(craft: Craft, offered: OfferedPass) -> list[DataClass]:
+def data_classes(problem: Problem, offered: OfferedPass) -> list[DataClass]:
     """Return the classes of data that can be on board when a pass begins."""
+    craft = problem.crafts[offered.satellite]
+    made = {kind for session in problem.sessions for kind, _ in session.makes}
     day = int(min(option.start_s for option in offered.options) // DAY_S)
     found = []
     for number, kind in enumerate(craft.kinds):
         if kind.halves_every_days is None:
             found.append(DataClass(number, None))
         else:
-            found.extend(DataClass(number, made) for made in range(-1, day + 1))
+            grows = kind.made_byte_s > 0.0 or kind.name in made
+            found.extend(DataClass(number, made_day) for made_day in range(-1, day + 1 if grows else 0))
     return found
 
 
