@@ -80,9 +80,8 @@ def test_nothing_for_developers_is_installed(programs: Path, tmp_path: Path) -> 
 def test_the_examples_of_the_readme_in_their_order(programs: Path, tmp_path: Path) -> None:
     """From help to calendars, in a folder that knows nothing of the checkout."""
     assert typed("passplan --help", tmp_path, programs).returncode == 0
-    shutil.copyfile(ROOT / "tle_samples" / "teasel-1_2026-12-08.tle", tmp_path / "newest.tle")
     (tmp_path / "my-week").mkdir()
-    shutil.move(tmp_path / "newest.tle", tmp_path / "my-week")
+    shutil.copyfile(ROOT / "tle_samples" / "teasel-1_2026-12-08.tle", tmp_path / "my-week" / "newest.tle")
     shown = {}
     for line in EXAMPLES:
         folder = tmp_path if line.startswith("passplan new") else tmp_path / "my-week"
