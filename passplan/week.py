@@ -29,7 +29,7 @@ _REPAIR_SHARE = 0.1  # of the time limit, for each repair once the time is up
 _HURRY_S = 10.0  # after Ctrl-C, for mending the plan that is there
 
 
-class PlanInterrupted(KeyboardInterrupt):  # noqa: N818  (it is no error: the plan in it is verified)
+class PlanInterrupted(KeyboardInterrupt):
     """Ctrl-C while planning; carries the best verified plan found so far."""
 
     def __init__(self, plan: Plan) -> None:
@@ -115,9 +115,13 @@ def plan_week(
         findings = verdict.findings
         for finding in findings:
             tell(f"the second reading found: {finding.where}: {finding.sentence}")
-        passes = dict(zip((c.id for c in plan.all_contacts), (laid.index for laid in made.contacts), strict=True))
+        passes = dict(
+            zip((c.id for c in plan.all_contacts), (laid.index for laid in made.contacts), strict=True)
+        )
         problem = tightened(problem, findings, passes, drop=attempt >= _REPAIRS - 1)
-    told = "\n".join(f"  {finding.where}: {finding.rule.value} {finding.sentence}" for finding in findings[:8])
+    told = "\n".join(
+        f"  {finding.where}: {finding.rule.value} {finding.sentence}" for finding in findings[:8]
+    )
     raise NothingVerifiedError(f"no plan came through the second reading; what it found last:\n{told}")
 
 
@@ -202,11 +206,17 @@ def _notices(
                 f"{craft.start_j / craft.capacity_j:.0%}."
             )
         elif horizon.seconds(battery.telemetry.at_utc) > 0.0:
-            told.append(f"The battery telemetry of {satellite.name} is from after Monday; it is taken as the start.")
+            told.append(
+                f"The battery telemetry of {satellite.name} is from after Monday; it is taken as the start."
+            )
         if satellite.name in sky.propagation_end_s:
             end = horizon.utc(sky.propagation_end_s[satellite.name])
-            told.append(f"{satellite.name} has decayed by its elements: no passes after {end:%a %d %b %H:%M} UTC.")
+            told.append(
+                f"{satellite.name} has decayed by its elements: no passes after {end:%a %d %b %H:%M} UTC."
+            )
     missing = next((step for step in solved.steps if step.name == "charge missing at the end"), None)
     if missing is not None and missing.kept > 1.0:
-        told.append(f"The charge wanted at the end is missed by {missing.kept / 3.6:.1f} Wh: no plan reaches it.")
+        told.append(
+            f"The charge wanted at the end is missed by {missing.kept / 3.6:.1f} Wh: no plan reaches it."
+        )
     return tuple(told)

@@ -26,7 +26,11 @@ def worth(problem: Problem, *, in_pieces: bool = False) -> float:
     assert in_pieces or found.worth == pytest.approx(value, abs=0.5)
     assert bound == pytest.approx(value, rel=2e-4, abs=1e-3)
     for values in (solved.best, solved.values):
-        plan = judge(trier, list(outcome(problem, solved.names, values).contacts), started(problem, solved.names, values))
+        plan = judge(
+            trier,
+            list(outcome(problem, solved.names, values).contacts),
+            started(problem, solved.names, values),
+        )
         assert not plan.faults
         assert plan.worth == pytest.approx(value, abs=0.5)
     return value

@@ -51,7 +51,9 @@ def _teams(problem: Problem, index: int, number: int, size: int) -> Iterator[tup
 
 def burden(problem: Problem, used: Used, staff: Staff) -> Burden:
     """Return the sittings and night quarter hours of one way to staff."""
-    nights = [math.ceil(duty_of(problem, index, who).night_min / 15.0) for index, _ in used for who in staff[index]]
+    nights = [
+        math.ceil(duty_of(problem, index, who).night_min / 15.0) for index, _ in used for who in staff[index]
+    ]
     begun = sum(begins_sitting(problem, staff, index, who) for index, _ in used for who in staff[index])
     return Burden(begun, sum(nights))
 

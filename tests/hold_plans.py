@@ -78,7 +78,11 @@ def tried(problem: Problem, solved: Solved | None = None) -> Trial:
     assert surely is not None
     assert perhaps is not None
     laid = [
-        judge(trier, list(outcome(problem, solved.names, values).contacts), started(problem, solved.names, values))
+        judge(
+            trier,
+            list(outcome(problem, solved.names, values).contacts),
+            started(problem, solved.names, values),
+        )
         for values in (solved.best, solved.values)
     ]
     return Trial(problem, solved, trier, surely, perhaps, laid[0], laid[1])

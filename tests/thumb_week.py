@@ -11,7 +11,7 @@ from passplan.schedule.layout import LaidOut
 from passplan.schedule.ledger import play
 from passplan.schedule.outcome import Outcome, loads
 from passplan.schedule.stock import carry
-from passplan.schedule.variables import DataClass, data_classes
+from passplan.schedule.variables import DataClass
 from tests.planning_weeks import Week
 from tests.rough_sky import UsablePass
 from tests.rule_of_thumb import Choice, best_elevation_first
@@ -62,10 +62,12 @@ def thumb_outcome(week: Week, choices: Sequence[Choice]) -> Outcome:
     )
 
 
-def best_by_hand(week: Week) -> Outcome:
-    """Return the better of two plans by hand: uplink anywhere in a pass, or not beyond its peak."""
-    plans = [thumb_choices(week, uplink_by_peak=by_peak) for by_peak in (False, True)]
-    return max((thumb_outcome(week, choices) for choices in plans), key=Outcome.worth)
+def plans_by_hand(week: Week) -> tuple[Outcome, Outcome]:
+    """Return two plans by hand: uplink anywhere in a pass, and not beyond its peak."""
+    anywhere, by_peak = (
+        thumb_outcome(week, thumb_choices(week, uplink_by_peak=by_peak)) for by_peak in (False, True)
+    )
+    return anywhere, by_peak
 
 
 def brought_kb(made: Outcome) -> float:
@@ -109,8 +111,7 @@ def _laid_out(problem: Problem, choice: Choice) -> LaidOut:
         slots.append(Slot(kind="close", start_s=end, end_s=option.end_s))
     kinds = [kind.name for kind in craft.kinds]
     commands = [command.name for command in problem.commands]
-    asked_kb = dict.fromkeys(data_classes(problem, offered), 0.0)
-    asked_kb |= {
+    asked_kb = {
         DataClass(kinds.index(part.kind), part.made_day): part.byte / 1000.0 for part in choice.carried
     }
     return LaidOut(

@@ -45,7 +45,9 @@ def duties(
         fitting = tuple(
             number
             for number, piece in enumerate(pieces)
-            if any(low <= piece.start_s - ready_s and piece.end_s <= high for low, high in free[operator.handle])
+            if any(
+                low <= piece.start_s - ready_s and piece.end_s <= high for low, high in free[operator.handle]
+            )
         )
         if not fitting:
             continue

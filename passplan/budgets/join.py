@@ -75,7 +75,9 @@ def join(mission: Mission, horizon: Horizon, sky: Sky, tracks: Sequence[Track]) 
     )
 
 
-def wanted_commands(mission: Mission, horizon: Horizon, asked: Sequence[Command]) -> tuple[WantedCommand, ...]:
+def wanted_commands(
+    mission: Mission, horizon: Horizon, asked: Sequence[Command]
+) -> tuple[WantedCommand, ...]:
     """Return the commands in numbers; those chained in one window share the higher least elevation."""
     index = {command.name: number for number, command in enumerate(asked)}
     names = [satellite.name for satellite in mission.satellites]
@@ -137,7 +139,8 @@ def _all_runs(mission: Mission, horizon: Horizon, sky: Sky, tracks: Sequence[Tra
     found = [
         run
         for sight, track in zip(sky.passes, tracks, strict=True)
-        if mission.station(sight.station).radio.transmits and within_discharge_limit(mission.satellite(sight.satellite))
+        if mission.station(sight.station).radio.transmits
+        and within_discharge_limit(mission.satellite(sight.satellite))
         for run in runs(mission, horizon, sight, track, spans[sight.satellite, sight.station])
     ]
     return sorted(found, key=lambda run: (run.peak_s, run.sight.satellite, run.sight.station))
@@ -207,11 +210,15 @@ def _overlapping(found: Sequence[Run], number: int) -> list[Run]:
     return near
 
 
-def _placings(horizon: Horizon, run: Run, pieces: Sequence[Option], asked: Sequence[Command]) -> tuple[Placing, ...]:
+def _placings(
+    horizon: Horizon, run: Run, pieces: Sequence[Option], asked: Sequence[Command]
+) -> tuple[Placing, ...]:
     """Return which commands could go up in which options of a run."""
     found = []
     for number, command in enumerate(asked):
-        if command.satellite != run.sight.satellite or (command.stations and run.sight.station not in command.stations):
+        if command.satellite != run.sight.satellite or (
+            command.stations and run.sight.station not in command.stations
+        ):
             continue
         begin = _seconds(horizon, command.earliest_utc, 0.0)
         end = _seconds(horizon, command.deadline_utc, horizon.week_s)
@@ -271,9 +278,7 @@ def _craft(mission: Mission, horizon: Horizon, satellite: Satellite, sky: Sky) -
     partitions = [part.name for part in satellite.store.partitions]
     return Craft(
         name=satellite.name,
-        idle=tuple(
-            IdleSpan(start_s=s.start_s, end_s=s.end_s, sunlit=s.sunlit, net_w=s.net_w) for s in spans
-        ),
+        idle=tuple(IdleSpan(start_s=s.start_s, end_s=s.end_s, sunlit=s.sunlit, net_w=s.net_w) for s in spans),
         draw_w=satellite.transmitter_draw_w,
         capacity_j=battery.capacity_j,
         floor_j=min(battery.floor_fraction * battery.capacity_j + margin_j, idle_low_j),

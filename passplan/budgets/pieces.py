@@ -70,7 +70,10 @@ def _cuts(first: Run, second: Run, gap: int) -> list[int]:
     if high <= low or covered - longest < _LEAST_GAIN_S:
         return []
     seconds = np.arange(low, high)
-    ahead = second.goodput_byte_s[seconds - second.track.start_s] > first.goodput_byte_s[seconds - first.track.start_s]
+    ahead = (
+        second.goodput_byte_s[seconds - second.track.start_s]
+        > first.goodput_byte_s[seconds - first.track.start_s]
+    )
     carried = np.concatenate(([0.0], np.cumsum(np.where(ahead, 1.0, -1.0))))
     overtakes = low + int((carried[-1] - 2.0 * carried).argmax()) if len(seconds) else low
     return sorted({overtakes, second.start_s - gap, first.end_s})

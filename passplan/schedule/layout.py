@@ -99,9 +99,9 @@ def _contact(
     before, after = _sides(problem, names, values, index, fixed, (begin, end)) or ([], [])
     left = _ordered(problem, fixed[0] + before, rising=True)
     right = _ordered(problem, fixed[1] + after, rising=False)
-    middle = (_spread(problem, names, values, index, (begin, end), left, right) if pieces else None) or _compact(
-        problem, names, values, index, (begin, end), left, right
-    )
+    middle = (
+        _spread(problem, names, values, index, (begin, end), left, right) if pieces else None
+    ) or _compact(problem, names, values, index, (begin, end), left, right)
     slots = [Slot(kind="acquire", start_s=option.start_s, end_s=begin), *middle]
     if end < option.end_s:
         slots.append(Slot(kind="close", start_s=end, end_s=option.end_s))
@@ -136,7 +136,9 @@ def _compact(
     return slots + _uplinks(problem, right, right_begin + sent_right)
 
 
-def _room_s(problem: Problem, index: int, inside: tuple[int, int], commands: Sequence[int], side: Side) -> int:
+def _room_s(
+    problem: Problem, index: int, inside: tuple[int, int], commands: Sequence[int], side: Side
+) -> int:
     """Return the downlink seconds that the commands of one side leave, those that want to be high inside."""
     offered = problem.passes[index]
     begin, end = inside
@@ -151,7 +153,7 @@ def _room_s(problem: Problem, index: int, inside: tuple[int, int], commands: Seq
     left = [room(None) - _total_s(problem, commands)]
     for command, here in rooms.items():
         nearer = [other for other, there in rooms.items() if there <= here]
-        left.append(rooms[command] - _total_s(problem, nearer))
+        left.append(here - _total_s(problem, nearer))
     return max(0, min(left))
 
 
@@ -179,7 +181,12 @@ def _spread(
             wanted = problem.commands[command]
             reach = offered.reach(wanted.least_elevation_deg)
             low, high = max(inside[0], reach.rise_s), min(inside[1], reach.fall_s)
-            begin = _gap(taken, wanted.seconds, (max(low, cursor), high) if forward else (low, min(high, cursor)), forward)
+            begin = _gap(
+                taken,
+                wanted.seconds,
+                (max(low, cursor), high) if forward else (low, min(high, cursor)),
+                forward,
+            )
             if begin is None:
                 return None
             taken = sorted([*taken, (begin, begin + wanted.seconds)])
@@ -190,12 +197,12 @@ def _spread(
     return sorted(slots, key=lambda slot: slot.start_s)
 
 
-def _gap(
-    taken: Sequence[tuple[int, int]], seconds: int, span: tuple[int, int], forward: bool
-) -> int | None:
+def _gap(taken: Sequence[tuple[int, int]], seconds: int, span: tuple[int, int], forward: bool) -> int | None:
     """Return the start of the first (or last) gap of so many seconds in a span, None when there is none."""
     edges = [span[0], *(edge for low, high in sorted(taken) for edge in (low, high)), span[1]]
-    gaps = [(max(low, span[0]), min(high, span[1])) for low, high in zip(edges[::2], edges[1::2], strict=True)]
+    gaps = [
+        (max(low, span[0]), min(high, span[1])) for low, high in zip(edges[::2], edges[1::2], strict=True)
+    ]
     wide = [(low, high) for low, high in gaps if high - low >= seconds]
     if not wide:
         return None
@@ -240,7 +247,9 @@ def _sides(
     best = min(range(1 << len(free)), key=unfit)
     if any(unfit(best)[:2]):
         return None
-    return [c for k, c in enumerate(free) if best >> k & 1], [c for k, c in enumerate(free) if not best >> k & 1]
+    return [c for k, c in enumerate(free) if best >> k & 1], [
+        c for k, c in enumerate(free) if not best >> k & 1
+    ]
 
 
 def _downlink_s(
@@ -292,9 +301,7 @@ def _uplinks(problem: Problem, commands: Sequence[int], begin: int) -> list[Slot
     slots = []
     for command in commands:
         wanted = problem.commands[command]
-        slots.append(
-            Slot(kind="uplink", start_s=begin, end_s=begin + wanted.seconds, command=wanted.name)
-        )
+        slots.append(Slot(kind="uplink", start_s=begin, end_s=begin + wanted.seconds, command=wanted.name))
         begin += wanted.seconds
     return slots
 
@@ -314,4 +321,3 @@ def _operators(problem: Problem, names: Variables, values: Values, index: int) -
     """Return who is on a contact, licensed ones first."""
     there = [operator for operator, column in names.y[index].items() if values[column] > 0.5]
     return tuple(sorted(there, key=lambda who: (not problem.operators[who].may_control, who)))
-

@@ -182,7 +182,9 @@ class Model:
             values[variable.id] = value
         return Answer(status, values, result.objective_value(), bound, seconds)
 
-    def _proto(self, objective: Mapping[int, float], *, maximise: bool, relaxed: bool) -> model_pb2.ModelProto:
+    def _proto(
+        self, objective: Mapping[int, float], *, maximise: bool, relaxed: bool
+    ) -> model_pb2.ModelProto:
         """Return the model as OR-Tools stores it; filling lists at once is what makes it fast."""
         proto = model_pb2.ModelProto()
         columns, rows = len(self.lower), len(self.row_lower)

@@ -60,7 +60,9 @@ def _no_pass(problem: Problem, command: int) -> str:
     wanted = problem.commands[command]
     day = problem.horizon.utc(wanted.deadline_s)
     without_people = [
-        gap for gap in problem.unstaffed if gap.satellite == wanted.satellite and gap.end_s <= wanted.deadline_s
+        gap
+        for gap in problem.unstaffed
+        if gap.satellite == wanted.satellite and gap.end_s <= wanted.deadline_s
     ]
     if without_people:
         return f"no licensed operator is free before its deadline, {day:%a %d %b %H:%M} UTC"

@@ -67,7 +67,14 @@ def charge_rows(problem: Problem, model: Model, names: Variables) -> None:
         ]
         model.fix(columns[0], craft.start_j * _KJ)
         for place, (low, high) in enumerate(zip(nodes, nodes[1:], strict=False)):
-            _step(model, craft, columns[place], columns[place + 1], spans_between(craft, low, high), loads[place])
+            _step(
+                model,
+                craft,
+                columns[place],
+                columns[place + 1],
+                spans_between(craft, low, high),
+                loads[place],
+            )
         model.row([(columns[-1], 1.0), (names.short[number], 1.0)], lower=craft.end_j * _KJ)
         _starts(problem, model, names, craft, number, nodes, columns)
 
@@ -83,7 +90,10 @@ def _nodes(problem: Problem, craft: Craft, number: int) -> list[float]:
     for offered in problem.passes:
         if offered.satellite == number:
             for part in offered.slices:
-                edges |= {float(part.minute_s // GRID_S * GRID_S), float((part.minute_s // GRID_S + 1) * GRID_S)}
+                edges |= {
+                    float(part.minute_s // GRID_S * GRID_S),
+                    float((part.minute_s // GRID_S + 1) * GRID_S),
+                }
     runs = [
         (float(start), float(start + session.length_s))
         for session in problem.sessions

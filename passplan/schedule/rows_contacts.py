@@ -101,7 +101,8 @@ def _stations(problem: Problem, model: Model, names: Variables) -> None:
 def _goes_on(problem: Problem, here: Sequence[int], offered: OfferedPass) -> bool:
     """Return whether a later peak of the same visibility follows at the station."""
     return any(
-        problem.passes[other].sight == offered.sight and problem.passes[other].peak_number > offered.peak_number
+        problem.passes[other].sight == offered.sight
+        and problem.passes[other].peak_number > offered.peak_number
         for other in here
     )
 

@@ -56,7 +56,9 @@ def _staff(problem: Problem, model: Model, names: Variables, index: int) -> None
     """A used pass has a licensed operator in whose hours the option lies, and a second person where asked."""
     offered, people = problem.passes[index], names.y[index]
     used = [(column, -1.0) for column in names.x[index]]
-    licensed = [(column, 1.0) for operator, column in people.items() if problem.operators[operator].may_control]
+    licensed = [
+        (column, 1.0) for operator, column in people.items() if problem.operators[operator].may_control
+    ]
     second = names.second.get(index)
     if second is None:
         model.row([*licensed, *used], 0.0, 0.0)
@@ -68,10 +70,10 @@ def _staff(problem: Problem, model: Model, names: Variables, index: int) -> None
                 for column in names.up(placing.command, index):
                     model.row([(column, 1.0), (second, -1.0)], upper=0.0)
     for duty in offered.duties:
-        column = people.get(duty.operator)
-        if column is not None and (second is not None or len(duty.options) < len(offered.options)):
+        mine = people.get(duty.operator)
+        if mine is not None and (second is not None or len(duty.options) < len(offered.options)):
             fitting = [(names.x[index][number], -1.0) for number in duty.options]
-            model.row([(column, 1.0), *fitting], upper=0.0)
+            model.row([(mine, 1.0), *fitting], upper=0.0)
 
 
 def _sittings(problem: Problem, model: Model, names: Variables, operator: int, mine: list[int]) -> None:
@@ -82,9 +84,12 @@ def _sittings(problem: Problem, model: Model, names: Variables, operator: int, m
     for index in mine:
         begins = model.column(0.0, 1.0)
         names.sitting[index, operator] = begins
-        before = [names.y[other][operator] for other in sitting_before(problem, index) if operator in names.y[other]]
+        before = [
+            names.y[other][operator] for other in sitting_before(problem, index) if operator in names.y[other]
+        ]
         model.row(
-            [(begins, 1.0), (names.y[index][operator], -1.0), *((column, 1.0) for column in before)], lower=0.0
+            [(begins, 1.0), (names.y[index][operator], -1.0), *((column, 1.0) for column in before)],
+            lower=0.0,
         )
 
 

@@ -24,8 +24,8 @@ from passplan.schedule.steps import (
     contacts_step,
     fairness_rows,
     first_must,
-    nothing,
     must_steps,
+    nothing,
     offered_min,
     people_step,
     urgent_step,
@@ -80,6 +80,14 @@ class Chain:
     done: list[tuple[Step, float, float, bool]] = field(default_factory=list)
     seconds: dict[str, float] = field(default_factory=dict)
 
+    @property
+    def held(self) -> Values:
+        """The last solution; only asked once there is one."""
+        if self.values is None:
+            told = "no solution yet"
+            raise LookupError(told)
+        return self.values
+
     def take(self, step: Step, *, report: bool = True, share: float = 1.0, loose: Sequence[int] = ()) -> bool:
         """Solve one step, keep its value for the later ones, and return whether there is a solution.
 
@@ -91,7 +99,9 @@ class Chain:
         """
         seconds = max(0.0, self.ends - time.perf_counter()) * share
         answer = self._packed(step, seconds, loose)
-        self.tell(f"{step.name}: {answer.value:.6g} {step.unit}, bound {answer.bound:.6g}, {answer.seconds:.1f} s")
+        self.tell(
+            f"{step.name}: {answer.value:.6g} {step.unit}, bound {answer.bound:.6g}, {answer.seconds:.1f} s"
+        )
         if answer.found:
             self.values = answer.values
         elif self.values is None or max(step.objective, default=0) >= len(self.values):
@@ -150,7 +160,9 @@ class Chain:
             if column not in open_:
                 held.fix(column, round(float(answer.values[column])))
         whole = self._solve(held, worth_step(self.problem, self.names), seconds)
-        if not whole.found or abs(step.value(whole.values) - answer.value) > 1e-6 * max(1.0, abs(answer.value)):
+        if not whole.found or abs(step.value(whole.values) - answer.value) > 1e-6 * max(
+            1.0, abs(answer.value)
+        ):
             return None
         return replace(answer, values=whole.values)
 
@@ -262,7 +274,7 @@ def _walk(chain: Chain) -> None:
         chain.take(step, share=0.7, loose=requests)
     chain.take(replace(worth_step(problem, names), name="worth again", give=nothing), share=0.7)
     for column in requests:
-        chain.model.fix(column, round(float(chain.values[column])))
+        chain.model.fix(column, round(float(chain.held[column])))
     chain.take(contacts_step(problem, names), report=False, share=0.7)
     _share_out(chain)
 
@@ -282,7 +294,9 @@ def _before_worth(chain: Chain) -> None:
     for step in steps:
         step.hold(lean, step.ideal or 0.0)
     trial = Chain(problem, lean, names, chain.ends, chain.solver, chain.tell, chain.plain)
-    if trial.take(urgent or Step("everything wanted first", "", {}, maximise=False), report=urgent is not None):
+    if trial.take(
+        urgent or Step("everything wanted first", "", {}, maximise=False), report=urgent is not None
+    ):
         chain.values, chain.seconds = trial.values, chain.seconds | trial.seconds
         chain.done = [(step, step.ideal or 0.0, step.ideal or 0.0, True) for step in steps] + trial.done
         for step, value, _, _ in chain.done:
@@ -317,7 +331,7 @@ def _share_out(chain: Chain) -> None:
 
     Only people are left to decide, so a model of their rows alone is enough.
     """
-    problem, names, values = chain.problem, chain.names, chain.values
+    problem, names, values = chain.problem, chain.names, chain.held
     small = Model()
     people = variables(problem, small)
     shared = len(small.lower)
@@ -334,10 +348,11 @@ def _share_out(chain: Chain) -> None:
         fixed = _at_most(sharing, sharing.done[-1][1])
         sharing.take(fairness_rows(problem, small, people, fixed), report=False)
     sharing.take(people_step(problem, people), report=False)
-    chain.values = values.copy()
+    settled = values.copy()
     for row in names.y:
         for column in row.values():
-            chain.values[column] = sharing.values[column]
+            settled[column] = sharing.held[column]
+    chain.values = settled
 
 
 def _at_most(chain: Chain, largest: float) -> dict[int, float]:
@@ -347,7 +362,7 @@ def _at_most(chain: Chain, largest: float) -> dict[int, float]:
     for index, offered in enumerate(problem.passes):
         for duty in offered.duties:
             if duty.operator in names.y[index]:
-                loads[duty.operator] += duty.load_min * float(chain.values[names.y[index][duty.operator]])
+                loads[duty.operator] += duty.load_min * float(chain.held[names.y[index][duty.operator]])
     return {
         operator: largest
         for operator, load in enumerate(loads)

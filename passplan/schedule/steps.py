@@ -123,9 +123,7 @@ def worth(problem: Problem, names: Variables) -> Objective:
 def worth_step(problem: Problem, names: Variables) -> Step:
     """Return the step that makes the most of the week."""
     fraction = problem.terms.give_worth_fraction
-    return Step(
-        "worth", "kB", worth(problem, names), maximise=True, give=lambda value: fraction * abs(value)
-    )
+    return Step("worth", "kB", worth(problem, names), maximise=True, give=lambda value: fraction * abs(value))
 
 
 def burden_steps(problem: Problem, names: Variables) -> list[Step]:

@@ -76,7 +76,9 @@ def _share(
 ) -> dict[DataClass, float]:
     """Return the bytes by class one contact takes: asked for first, then the most valuable left."""
     room, taken = laid.link_byte, {}
-    classes = sorted(laid.asked_kb, key=lambda data: (-weight_of(craft, data, moment_s), data.kind, data.made_day or 0))
+    classes = sorted(
+        laid.asked_kb, key=lambda data: (-weight_of(craft, data, moment_s), data.kind, data.made_day or 0)
+    )
     for data in classes:
         byte = min(laid.asked_kb[data] * 1000.0, max(0.0, held.get(data, 0.0)), room)
         taken[data] = byte
