@@ -63,7 +63,8 @@ def plan_week(
         mission: what people wrote.
         horizon: the week and its look-ahead.
         elements: satellite name to the element set to use.
-        edition, made_from: written into the plan.
+        edition: number of the plan.
+        made_from: (file, SHA-256) of the inputs, written into it.
         contact_ids: names contacts, see `PlanStore.contact_ids`.
         time_limit_s: for the solves.
         old_elements: sets beyond the age limit were allowed.
@@ -115,9 +116,7 @@ def plan_week(
         findings = verdict.findings
         for finding in findings:
             tell(f"the second reading found: {finding.where}: {finding.sentence}")
-        passes = dict(
-            zip((c.id for c in plan.all_contacts), (laid.index for laid in made.contacts), strict=True)
-        )
+        passes = {one.id: laid.index for one, laid in zip(plan.all_contacts, made.contacts, strict=True)}
         problem = tightened(problem, findings, passes, drop=attempt >= _REPAIRS - 1)
     told = "\n".join(
         f"  {finding.where}: {finding.rule.value} {finding.sentence}" for finding in findings[:8]
@@ -197,7 +196,7 @@ def _notices(
         floor_j = battery.floor_fraction * craft.capacity_j
         if craft.floor_j < floor_j:
             told.append(
-                f"{satellite.name} falls under its floor of {battery.floor_fraction:.0%} with no contact at all, "
+                f"{satellite.name} falls under its floor of {battery.floor_fraction:.0%} with no contact, "
                 f"to {craft.floor_j / craft.capacity_j:.0%}: generation does not carry the bus."
             )
         if battery.telemetry is None:

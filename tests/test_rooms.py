@@ -15,7 +15,7 @@ from tests.pages import DEVELOPERS, ROOT, table, ticked
 PACKAGE = ROOT / "passplan"
 FILES = sorted(PACKAGE.rglob("*.py"))
 ROOMS = sorted(folder.name for folder in PACKAGE.iterdir() if (folder / "__init__.py").exists())
-LONGEST_FILE, LONGEST_FUNCTION = 350, 60
+LONGEST_FILE, LONGEST_FUNCTION = 400, 60
 EVERYWHERE, NOWHERE = "everywhere", "nowhere"
 
 # Whom the parts that walk between rooms may know; a room knows `domain` and itself.
