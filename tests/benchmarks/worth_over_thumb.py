@@ -57,7 +57,7 @@ def compare(kind: WeekKind, seed: int, limit_s: float) -> Compared:
 def against_thumb(pairs: list[tuple[WeekKind, int]], limit_s: float) -> None:
     """Print worth and bytes over best elevation first, median and least."""
     say(
-        "(e) laid-out worth over best elevation first, give 0: over the better of uplink anywhere and by the peak"
+        "(e) laid-out worth, give 0, over best elevation first: the better of uplink anywhere and by the peak"
     )
     say("    bar: 1.15 in the median of 20 easy seeds, never under 1")
     for kind in dict.fromkeys(kind for kind, _ in pairs):
