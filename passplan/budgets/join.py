@@ -141,7 +141,7 @@ def _all_runs(mission: Mission, horizon: Horizon, sky: Sky, tracks: Sequence[Tra
         for sight, track in zip(sky.passes, tracks, strict=True)
         if mission.station(sight.station).radio.transmits
         and within_discharge_limit(mission.satellite(sight.satellite))
-        for run in runs(mission, horizon, sight, track, spans[sight.satellite, sight.station])
+        for run in runs(mission, sight, track, spans[sight.satellite, sight.station])
     ]
     return sorted(found, key=lambda run: (run.peak_s, run.sight.satellite, run.sight.station))
 

@@ -1,5 +1,6 @@
 """Contact options: whole passes and the pieces that hand-overs between stations make of them."""
 
+import itertools
 from collections.abc import Sequence
 
 import numpy as np
@@ -50,7 +51,7 @@ def slices(run: Run) -> tuple[Slice, ...]:
     edges |= set(range(-(-run.start_s // _GRID_S) * _GRID_S, run.end_s, _GRID_S))
     ordered = sorted(edges)
     found = []
-    for low, high in zip(ordered, ordered[1:], strict=False):
+    for low, high in itertools.pairwise(ordered):
         mean = run.byte(low, high) / (high - low)
         side = "left" if high <= run.peak_s else "right"
         minute = low // _GRID_S * _GRID_S

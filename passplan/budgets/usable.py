@@ -108,12 +108,11 @@ def open_spans(station: Station, satellite: Satellite, horizon: Horizon) -> list
     return without(merged(hours, 0.0, horizon.end_s), shut)
 
 
-def runs(mission: Mission, horizon: Horizon, sight: Pass, track: Track, spans: Iterable[Span]) -> list[Run]:
+def runs(mission: Mission, sight: Pass, track: Track, spans: Iterable[Span]) -> list[Run]:
     """Return the usable runs of one pass of a transmitting station, in order of time.
 
     Args:
         mission: for satellite, station and planning values.
-        horizon: the week.
         sight: the pass.
         track: its seconds.
         spans: open spans of station and satellite (s of the week).

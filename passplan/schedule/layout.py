@@ -44,7 +44,8 @@ def lay_out(
 
     Args:
         problem: the week.
-        names, values: a solution.
+        names: columns.
+        values: a solution.
         pieces: satellites whose downlinks stand exactly where the solution has them, in
             pieces where it must be; others are put together around the peak.
     """
@@ -151,7 +152,7 @@ def _room_s(
 
     rooms = {command: room(command) for command in commands}
     left = [room(None) - _total_s(problem, commands)]
-    for command, here in rooms.items():
+    for here in rooms.values():
         nearer = [other for other, there in rooms.items() if there <= here]
         left.append(here - _total_s(problem, nearer))
     return max(0, min(left))
@@ -166,7 +167,7 @@ def _spread(
     left: Sequence[int],
     right: Sequence[int],
 ) -> list[Slot] | None:
-    """Return the slots with the downlink where the solution has it, or None where commands do not fit between."""
+    """Return slots with the downlink where the solution has it; None where commands do not fit between."""
     offered = problem.passes[index]
     taken: list[tuple[int, int]] = []
     for part, column in zip(offered.slices, names.t[index], strict=True):
@@ -185,7 +186,7 @@ def _spread(
                 taken,
                 wanted.seconds,
                 (max(low, cursor), high) if forward else (low, min(high, cursor)),
-                forward,
+                forward=forward,
             )
             if begin is None:
                 return None
@@ -197,7 +198,9 @@ def _spread(
     return sorted(slots, key=lambda slot: slot.start_s)
 
 
-def _gap(taken: Sequence[tuple[int, int]], seconds: int, span: tuple[int, int], forward: bool) -> int | None:
+def _gap(
+    taken: Sequence[tuple[int, int]], seconds: int, span: tuple[int, int], *, forward: bool
+) -> int | None:
     """Return the start of the first (or last) gap of so many seconds in a span, None when there is none."""
     edges = [span[0], *(edge for low, high in sorted(taken) for edge in (low, high)), span[1]]
     gaps = [

@@ -1,5 +1,6 @@
 """The charge of a laid-out week, exact between its edges."""
 
+import itertools
 from collections.abc import Iterable
 from dataclasses import dataclass
 
@@ -49,7 +50,7 @@ def play(craft: Craft, loads: Iterable[Load]) -> Charge:
         extra[end] -= draw_w
     times, energy = [edges[0]], [min(craft.start_j, craft.capacity_j)]
     span, load_w = 0, 0.0
-    for low, high in zip(edges, edges[1:], strict=False):
+    for low, high in itertools.pairwise(edges):
         load_w += extra[low]
         while craft.idle[span].end_s <= low and span + 1 < len(craft.idle):
             span += 1

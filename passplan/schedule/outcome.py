@@ -38,7 +38,7 @@ class Outcome:
         return total + sum(problem.sessions[which].worth for which, at in self.starts.items() if at < until)
 
     def bears(self, number: int) -> bool:
-        """Return whether one satellite's battery keeps its floors and reaches the charge wanted at the end."""
+        """Return whether one satellite's battery keeps its floors and ends with the charge wanted."""
         problem, craft, charge = self.problem, self.problem.crafts[number], self.charges[number]
         if charge.lowest(0.0, problem.horizon.end_s)[1] < craft.floor_j - _ROUNDING_J:
             return False

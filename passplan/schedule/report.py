@@ -1,5 +1,6 @@
 """An outcome written down as the `Plan` people get."""
 
+import itertools
 import math
 from collections.abc import Callable, Mapping, Sequence
 from datetime import datetime
@@ -48,13 +49,15 @@ def draw_up(
     Args:
         mission: its name.
         solved: steps and bounds.
-        plan: the outcome to publish; best: that of the worth step, nothing given.
+        plan: the outcome to publish.
+        best: that of the worth step, nothing given.
         elements: sets used.
         name_contacts: gives ids to (satellite, station code, TCA).
         reasons: command index to the words of why it is not placed.
         notices: sentences to read first.
         wanted: satellite name to (floor fraction, end fraction, start assumed) as people wrote them.
-        edition, made_from: of the plan.
+        edition: number of the plan.
+        made_from: (file, SHA-256) of the inputs.
     """
     problem = plan.problem
     contacts = _contacts(plan, name_contacts)
@@ -308,7 +311,7 @@ def _silence(plan: Outcome, number: int, contacts: Sequence[Contact]) -> Silence
     edges.append((problem.horizon.end_s, problem.horizon.end_s))
     gaps = [
         (after[0] - before[1], before[1], after[0])
-        for before, after in zip(edges, edges[1:], strict=False)
+        for before, after in itertools.pairwise(edges)
         if before[1] < problem.horizon.week_s
     ]
     length, begin, end = max(gaps, key=lambda gap: (gap[0], -gap[1]))

@@ -4,6 +4,7 @@ Between nodes at which nothing is decided a whole run of sun and shadow is one s
 min(E + gain, top), as a chain of such steps is again one.
 """
 
+import itertools
 from bisect import bisect_right
 from collections import defaultdict
 from dataclasses import dataclass, replace
@@ -66,7 +67,7 @@ def charge_rows(problem: Problem, model: Model, names: Variables) -> None:
             for low, high in zip(nodes, [*nodes[1:], nodes[-1]], strict=True)
         ]
         model.fix(columns[0], craft.start_j * _KJ)
-        for place, (low, high) in enumerate(zip(nodes, nodes[1:], strict=False)):
+        for place, (low, high) in enumerate(itertools.pairwise(nodes)):
             _step(
                 model,
                 craft,
@@ -118,7 +119,7 @@ def _merged(spans: list[tuple[float, float]]) -> list[tuple[float, float]]:
     return joined
 
 
-def _loads(
+def _loads(  # noqa: C901  (three kinds of load, each a loop of its own)
     problem: Problem, names: Variables, craft: Craft, number: int, nodes: list[float]
 ) -> dict[int, list[Term]]:
     """Return, for each step, the energy (kJ) that decisions take from it."""
@@ -166,7 +167,7 @@ def _step(
         model.row([(after, 1.0)], upper=change.top_j * _KJ)
 
 
-def _starts(
+def _starts(  # noqa: C901  (contacts and commands ask at the same nodes)
     problem: Problem,
     model: Model,
     names: Variables,

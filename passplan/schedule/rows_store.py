@@ -113,7 +113,7 @@ def _inflow(
     data: DataClass,
     sessions: list[tuple[str, int, int, float]],
 ) -> list[Term]:
-    """Return the terms that carry a class from the last pass to this one: less what came down, plus sessions."""
+    """Return the terms that carry a class from the last pass to this one: less what came down."""
     terms: list[Term] = []
     if data in stock:
         last = own[place - 1]

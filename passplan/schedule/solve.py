@@ -275,7 +275,7 @@ def _walk(chain: Chain) -> None:
     chain.take(replace(worth_step(problem, names), name="worth again", give=nothing), share=0.7)
     for column in requests:
         chain.model.fix(column, round(float(chain.held[column])))
-    chain.take(contacts_step(problem, names), report=False, share=0.7)
+    chain.take(contacts_step(names), report=False, share=0.7)
     _share_out(chain)
 
 

@@ -155,7 +155,7 @@ def burden_steps(problem: Problem, names: Variables) -> list[Step]:
     ]
 
 
-def contacts_step(problem: Problem, names: Variables) -> Step:
+def contacts_step(names: Variables) -> Step:
     """Return the tie-break on contacts: the fewest, then the earliest in the list of options.
 
     The small weights tell equal plans apart, so that two solvers choose the same.
