@@ -18,6 +18,7 @@ from passplan.schedule.rows_people import people_rows
 from passplan.schedule.rows_requests import request_rows
 from passplan.schedule.rows_store import store_rows
 from passplan.schedule.steps import (
+    FAIREST,
     PROVEN_GAP,
     Step,
     burden_steps,
@@ -251,8 +252,8 @@ def _chain(problem: Problem, ends: float, solver: Solver, tell: Tell, *, charge:
             value=value,
             bound=bound,
             give=step.give(value),
-            # The fairest share has a column of its own, which no other model has.
-            kept=step.value(values) if max(step.objective, default=0) < len(model.lower) else value,
+            # The fairest share has a column of its own, in a model of people alone.
+            kept=value if step.name == FAIREST else step.value(values),
             proven=proven and not interrupted,
         )
         for step, value, bound, proven in chain.done

@@ -16,6 +16,7 @@ Objective = dict[int, float]
 # that minutes take, and nobody sleeps differently for it.
 QUARTER_MIN = 15.0
 PROVEN_GAP = 1e-4
+FAIREST = "largest share of what was offered"
 
 
 def nothing(_: float) -> float:
@@ -198,7 +199,7 @@ def fairness_rows(problem: Problem, model: Model, names: Variables, fixed: dict[
             model.row(terms, upper=fixed[operator] * total[operator] + 1e-6)
         elif terms:
             model.row([*terms, (share, -total[operator])], upper=0.0)
-    return Step("largest share of what was offered", "fraction", {share: 1.0}, maximise=False)
+    return Step(FAIREST, "fraction", {share: 1.0}, maximise=False)
 
 
 def people_step(problem: Problem, names: Variables) -> Step:

@@ -8,6 +8,7 @@ after the other, seconds by the clock of the wall: leave the machine alone meanw
 """
 
 import argparse
+import math
 import os
 import statistics
 import subprocess
@@ -30,12 +31,13 @@ from passplan.errands.desk import Desk
 from passplan.errands.inputs import Inputs, read_inputs
 from passplan.schedule.solve import Solved, solve
 from passplan.verify import check
+from passplan.verify.evidence import gather
 from passplan.workspace.plans import PlanStore
 from tests.benchmarks.aloud import say
 from tests.benchmarks.two_solvers import agreement
 from tests.benchmarks.worth_over_thumb import against_thumb
 from tests.generated import WeekKind
-from tests.planning_weeks import joined_week, rates_of
+from tests.planning_weeks import Week, joined_week, rates_of
 
 KINDS: tuple[WeekKind, ...] = get_args(WeekKind)
 
@@ -62,6 +64,7 @@ class Planned:
 
     kind: str
     seed: int
+    week: Week
     plan: Plan
     watch: Watch
     seconds: float
@@ -169,6 +172,7 @@ def plan_generated(kind: WeekKind, seed: int, limit_s: float) -> Planned | None:
                 made_from=(),
                 contact_ids=lambda found: tuple(f"C-{number + 1:02d}" for number in range(len(found))),
                 time_limit_s=limit_s,
+                tell=_repaired,
             )
     except PassplanError as error:
         say(f"  {kind} {seed}: no plan in {time.perf_counter() - begin:.1f} s: {error}")
@@ -182,7 +186,7 @@ def plan_generated(kind: WeekKind, seed: int, limit_s: float) -> Planned | None:
         f"verification {sum(watch.readings_s):4.1f} s  {_proof(plan)}{again}"
     )
     say(f"                 {told}")
-    return Planned(kind=kind, seed=seed, plan=plan, watch=watch, seconds=seconds)
+    return Planned(kind=kind, seed=seed, week=ready, plan=plan, watch=watch, seconds=seconds)
 
 
 def generated_weeks(pairs: list[tuple[WeekKind, int]], limit_s: float) -> None:
@@ -200,17 +204,43 @@ def generated_weeks(pairs: list[tuple[WeekKind, int]], limit_s: float) -> None:
         give = next((step.give for step in made.plan.steps if step.name == "worth"), 0.0)
         say(
             f"  {made.label:15} bound {worth.bound:9.1f}  "
-            f"best/bound {worth.best_laid_out / worth.bound:.5f}  "
-            f"plan/(best - give) {worth.laid_out / (worth.best_laid_out - give):.5f}"
+            f"best/bound {_ratio(worth.best_laid_out, worth.bound):.5f}  "
+            f"plan/(best - give) {_ratio(worth.laid_out, worth.best_laid_out - give):.5f}"
         )
-    say("(d) lowest charge of the week, second reading less planned; bar 0.5 % of capacity")
+    say("(d) lowest charge, second reading less planned, % of capacity; bar 0.5 in the week")
     say("    rates of the plan never exceed the physical link by over 0.2 %, so all kinds are verified")
     for made in found:
-        verdict = made.plan.verdict
-        for battery in made.plan.batteries if verdict else ():
-            seen = verdict.lowest_fraction[battery.satellite] if verdict else 0.0
-            off = 100.0 * (seen - battery.lowest_fraction)
-            say(f"  {made.label:15} planned {battery.lowest_fraction:.2%}  verified {seen:.2%}  {off:+.3f} %")
+        _charges(made)
+
+
+def _ratio(one: float, other: float) -> float:
+    """Return a ratio, not a number where there is nothing to compare with."""
+    return one / other if other else math.nan
+
+
+def _repaired(line: str) -> None:
+    """Print what a second reading found fault with."""
+    if line.startswith("the second reading found"):
+        say(f"    {line}")
+
+
+def _charges(made: Planned) -> None:
+    """Print the lowest charge of the week by both readings, and where they part most in a contact."""
+    ledgers = gather(made.week.mission, made.week.elements, made.plan).ledgers
+    for battery in made.plan.batteries:
+        ledger = ledgers[battery.satellite]
+        seen = ledger.lowest(0, int(made.plan.horizon.week_s))[1] / ledger.capacity_j
+        parted = [
+            ledger.lowest(contact.start_s, contact.end_s)[1] / ledger.capacity_j
+            - contact.charge_lowest_fraction
+            for contact in made.plan.all_contacts
+            if contact.satellite == battery.satellite
+        ]
+        say(
+            f"  {made.label:15} planned {battery.lowest_fraction:.2%}  verified {seen:.2%}  "
+            f"{100.0 * (seen - battery.lowest_fraction):+.3f}; "
+            f"in contacts {100.0 * min(parted, default=0.0):+.3f} to {100.0 * max(parted, default=0.0):+.3f}"
+        )
 
 
 # ---- what to run ----

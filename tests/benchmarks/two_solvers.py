@@ -33,7 +33,7 @@ def agreement(problem: Problem, limit_s: float) -> None:
     """Print every step of the chain by both solvers, on the same model each time."""
     say(f"(f) HiGHS and SCIP on every solve of the sample, earlier values held, limit {limit_s:g} s each")
     waiting: list[tuple[Answer, Answer]] = []
-    verdicts: list[bool] = []
+    verdicts: list[str] = []
 
     def step_done(line: str) -> None:
         for number, (first, second) in enumerate(waiting):
@@ -44,20 +44,22 @@ def agreement(problem: Problem, limit_s: float) -> None:
 
     with both_solvers(limit_s, lambda first, second: waiting.append((first, second))):
         solve(problem, time_limit_s=3600.0, tell=step_done)
-    say(f"  {sum(verdicts)} of {len(verdicts)} solves agree within the gaps")
+    told = [f"{verdicts.count(word)} {word}" for word in ("agree", "DISAGREE", "no answer in the time")]
+    say(f"  of {len(verdicts)} solves: {', '.join(told)}")
 
 
-def _compare_answers(name: str, first: Answer, second: Answer) -> bool:
-    """Print two answers to one question and return whether they agree."""
+def _compare_answers(name: str, first: Answer, second: Answer) -> str:
+    """Print two answers to one question and return in words whether they agree."""
     if not (first.found and second.found):
-        same = first.status == second.status
-        say(f"  {name:48} HiGHS {first.status}, SCIP {second.status}")
-        return same
+        told = "agree" if first.status == second.status else "DISAGREE"
+        told = "no answer in the time" if "unknown" in {first.status, second.status} else told
+        say(f"  {name:48} HiGHS {first.status}, SCIP {second.status}  {told}")
+        return told
     off = abs(first.value - second.value)
     gap = max(abs(answer.bound - answer.value) for answer in (first, second))
-    allowed = gap + 1e-6 * max(1.0, abs(first.value))
+    told = "agree" if off <= gap + 1e-6 * max(1.0, abs(first.value)) else "DISAGREE"
     say(
         f"  {name:48} {first.value:13.6f} {second.value:13.6f}  off {off:.2e}, gaps {gap:.2e}  "
-        f"{first.seconds:6.1f} s {second.seconds:6.1f} s  {'agree' if off <= allowed else 'DISAGREE'}"
+        f"{first.seconds:6.1f} s {second.seconds:6.1f} s  {told}"
     )
-    return off <= allowed
+    return told

@@ -120,7 +120,7 @@ def test_calendars_are_written_once_and_left_alone(typed: Type, week: Path) -> N
     typed("plan")
     code, out, err = typed("calendar")
     assert (code, err) == (0, "")
-    assert out.startswith("Edition 1 of week 2026-W50 is the first: 4 contacts for 2 people.")
+    assert out.startswith("Edition 1 of week 2026-W50 is the first: 6 contacts for 2 people.")
     names = {
         "mission-finch.ics",
         "station-nor.ics",
