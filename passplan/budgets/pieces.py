@@ -18,7 +18,7 @@ _GRID_S = 60
 
 
 def options(mission: Mission, run: Run, others: Sequence[Run]) -> tuple[Option, ...]:
-    """Return every piece of a run worth offering, the whole one first, then by start and end.
+    """Return every piece of a run worth offering, by start and end.
 
     Args:
         mission: for the times a contact is made of.

@@ -223,7 +223,7 @@ def _battery(plan: Outcome, number: int, wanted: Mapping[str, tuple[float, float
     problem = plan.problem
     craft, charge = problem.crafts[number], plan.charges[number]
     floor, end, assumed = wanted[craft.name]
-    at, low = charge.lowest(0.0, problem.horizon.end_s)
+    at, low = charge.lowest(0.0, problem.horizon.week_s)
     lowest_idle = min(floor * craft.capacity_j, craft.floor_j)
     return BatteryReport(
         satellite=craft.name,
