@@ -6,8 +6,9 @@ import pytest
 
 from passplan.domain.satellite import DataKind
 from passplan.schedule.outcome import Outcome, outcome
-from passplan.schedule.solve import build, solve
+from passplan.schedule.solve import solve
 from passplan.schedule.steps import worth_step
+from passplan.schedule.whole_model import build
 from tests.generated import WeekKind
 from tests.planning_weeks import Week, joined_week
 from tests.rule_of_thumb import Choice

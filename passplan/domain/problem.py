@@ -106,10 +106,6 @@ class OfferedPass:
             return self.reaches[0]
         return next(r for r in self.reaches if r.least_elevation_deg >= least_elevation_deg)
 
-    def mean_goodput_byte_s(self, start_s: int, end_s: int) -> float:
-        """Return the mean of the one-second curve over [start_s, end_s)."""
-        return self.byte(start_s, end_s) / max(1, end_s - start_s)
-
     def byte(self, start_s: int, end_s: int) -> float:
         """Return the bytes the one-second curve carries over [start_s, end_s)."""
         first = start_s - self.curve_start_s

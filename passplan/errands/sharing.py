@@ -1,7 +1,5 @@
 """The editions as calendars for phones: `calendar`."""
 
-import os
-import tempfile
 from collections.abc import Mapping
 from datetime import timedelta
 from pathlib import Path
@@ -18,6 +16,7 @@ from passplan.render.words import count
 from passplan.workspace.lock import hold
 from passplan.workspace.plans import PlanStore
 from passplan.workspace.read import read_workspace
+from passplan.workspace.whole_file import replace_with
 
 CALENDARS = "calendars"
 ALARM_MIN = 30
@@ -83,24 +82,9 @@ def _write(home: Path, files: Mapping[str, bytes]) -> list[str]:
         for name, content in files.items():
             path = home / name
             if not (path.is_file() and path.read_bytes() == content):
-                _replace(path, content)
+                replace_with(path, content)
                 written.append(name)
     except OSError as error:
         told = (error.strerror or str(error)).lower()
         raise PassplanError(f"{home}: calendars cannot be written: {told}") from None
     return written
-
-
-def _replace(path: Path, content: bytes) -> None:
-    """Give a file new content in one move, so that a server never hands out half of it."""
-    handle, name = tempfile.mkstemp(prefix=".", suffix=".part", dir=path.parent)
-    part = Path(name)
-    try:
-        with os.fdopen(handle, "wb") as file:
-            file.write(content)
-            file.flush()
-            os.fsync(file.fileno())
-        part.chmod(0o644)
-        part.replace(path)
-    finally:
-        part.unlink(missing_ok=True)

@@ -1,8 +1,10 @@
 """From a solution to real slots in whole seconds: acquire, uplink, downlink, uplink, close."""
 
+import math
 from collections.abc import Container, Iterable, Sequence
 from dataclasses import dataclass
 
+from passplan.domain.moments import merged
 from passplan.domain.plan import Slot
 from passplan.domain.problem import Option, Problem, Side
 from passplan.schedule.model import Values
@@ -70,9 +72,8 @@ def misfits(problem: Problem, names: Variables, values: Values) -> list[list[int
         used = [number for number, column in enumerate(names.x[index]) if values[column] > 0.5]
         if free and used:
             option = offered.options[used[0]]
-            fixed = _chosen(names.up_left, values, index), _chosen(names.up_right, values, index)
-            inside = option.start_s + problem.terms.acquire_s, option.end_s - problem.terms.close_s
-            if _sides(problem, names, values, index, fixed, inside) is None:
+            fixed = _fixed(names, values, index)
+            if _sides(problem, names, values, index, fixed, _inside(problem, option)) is None:
                 chosen = [*fixed[0], *fixed[1], *free]
                 columns = [c for command in chosen for c in names.up(command, index) if values[c] > 0.5]
                 found.append([names.x[index][used[0]], *columns])
@@ -94,9 +95,8 @@ def _contact(
 ) -> LaidOut:
     """Lay one contact out: commands stand as near to the downlink as they can, the downlink to the peak."""
     offered = problem.passes[index]
-    begin = option.start_s + problem.terms.acquire_s
-    end = option.end_s - problem.terms.close_s
-    fixed = _chosen(names.up_left, values, index), _chosen(names.up_right, values, index)
+    begin, end = _inside(problem, option)
+    fixed = _fixed(names, values, index)
     before, after = _sides(problem, names, values, index, fixed, (begin, end)) or ([], [])
     left = _ordered(problem, fixed[0] + before, rising=True)
     right = _ordered(problem, fixed[1] + after, rising=False)
@@ -271,6 +271,16 @@ def _downlink_s(
     return max(left, min(total - right, rooms[0])), right
 
 
+def _inside(problem: Problem, option: Option) -> tuple[int, int]:
+    """Return the stretch of an option between acquire and close."""
+    return option.start_s + problem.terms.acquire_s, option.end_s - problem.terms.close_s
+
+
+def _fixed(names: Variables, values: Values, index: int) -> tuple[list[int], list[int]]:
+    """Return the commands of one pass whose side the solution has settled, before and after the downlink."""
+    return _chosen(names.up_left, values, index), _chosen(names.up_right, values, index)
+
+
 def _chosen(side: dict[tuple[int, int], int], values: Values, index: int) -> list[int]:
     """Return the commands of one pass that a solution sends on one side."""
     return [command for (command, where), column in side.items() if where == index and values[column] > 0.5]
@@ -311,13 +321,8 @@ def _uplinks(problem: Problem, commands: Sequence[int], begin: int) -> list[Slot
 
 def _downlinks(parts: Iterable[tuple[int, int]]) -> list[Slot]:
     """Return downlink slots in order, touching ones as one, empty ones left out."""
-    joined: list[tuple[int, int]] = []
-    for low, high in sorted(part for part in parts if part[1] > part[0]):
-        if joined and low <= joined[-1][1]:
-            joined[-1] = joined[-1][0], high
-        else:
-            joined.append((low, high))
-    return [Slot(kind="downlink", start_s=low, end_s=high) for low, high in joined]
+    joined = merged(parts, -math.inf, math.inf)
+    return [Slot(kind="downlink", start_s=int(low), end_s=int(high)) for low, high in joined]
 
 
 def _operators(problem: Problem, names: Variables, values: Values, index: int) -> tuple[int, ...]:

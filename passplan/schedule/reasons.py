@@ -1,7 +1,6 @@
 """Why a command is not placed, found by forcing it and asking which rules are in the way."""
 
 import math
-from collections.abc import Callable
 
 from passplan.domain.problem import Problem
 from passplan.schedule.model import Model
@@ -9,11 +8,9 @@ from passplan.schedule.rows_charge import charge_rows
 from passplan.schedule.rows_contacts import contact_rows
 from passplan.schedule.rows_people import people_rows
 from passplan.schedule.rows_requests import placed, request_rows
-from passplan.schedule.rows_store import store_rows
 from passplan.schedule.steps import worth
-from passplan.schedule.variables import Variables, variables
-
-Rows = Callable[[Problem, Model, Variables], None]
+from passplan.schedule.variables import Variables
+from passplan.schedule.whole_model import Rows, build
 
 # Each group with the words for when it alone stands in the way.
 _GROUPS: tuple[tuple[Rows, str], ...] = (
@@ -34,7 +31,7 @@ def reasons(problem: Problem, unplaced: list[int]) -> dict[int, str]:
     """
     if not unplaced:
         return {}
-    best = _relaxed_worth(problem, *_model(problem, None))
+    best = _relaxed_worth(problem, *build(problem))
     return {command: _reason(problem, command, best) for command in unplaced}
 
 
@@ -69,19 +66,9 @@ def _no_pass(problem: Problem, command: int) -> str:
     return f"no usable pass of a station that may send it ends before its deadline, {day:%a %d %b %H:%M} UTC"
 
 
-def _model(problem: Problem, left_out: Rows | None) -> tuple[Model, Variables]:
-    """Return the model with one group of rows left out."""
-    model = Model()
-    names = variables(problem, model)
-    for rows in (contact_rows, request_rows, people_rows, charge_rows, store_rows):
-        if rows is not left_out:
-            rows(problem, model, names)
-    return model, names
-
-
 def _forced(problem: Problem, command: int, left_out: Rows | None) -> tuple[Model, Variables] | None:
     """Return the model with a command forced in; None if it has no column."""
-    model, names = _model(problem, left_out)
+    model, names = build(problem, left_out=left_out)
     columns = placed(problem, names, command)
     if not columns:
         return None

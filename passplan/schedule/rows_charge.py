@@ -9,6 +9,7 @@ from bisect import bisect_right
 from collections import defaultdict
 from dataclasses import dataclass, replace
 
+from passplan.domain.moments import merged
 from passplan.domain.problem import Craft, IdleSpan, Problem
 from passplan.domain.rules import Rule
 from passplan.schedule.model import Model, Term
@@ -91,32 +92,18 @@ def _nodes(problem: Problem, craft: Craft, number: int) -> list[float]:
     for offered in problem.passes:
         if offered.satellite == number:
             for part in offered.slices:
-                edges |= {
-                    float(part.minute_s // GRID_S * GRID_S),
-                    float((part.minute_s // GRID_S + 1) * GRID_S),
-                }
+                edges |= {float(part.minute_s), float(part.minute_s + GRID_S)}
     runs = [
         (float(start), float(start + session.length_s))
         for session in problem.sessions
         if session.satellite == number
         for start in session.starts_s
     ]
-    for low, high in _merged(runs):
+    for low, high in merged(runs, 0.0, problem.horizon.end_s):
         edges |= {span.start_s for span in craft.idle if low < span.start_s < high}
         first, last = int(low // SESSION_GRID_S), int(-(-high // SESSION_GRID_S))
         edges |= {float(number_of * SESSION_GRID_S) for number_of in range(first, last + 1)}
     return sorted(edge for edge in edges if 0.0 <= edge <= problem.horizon.end_s)
-
-
-def _merged(spans: list[tuple[float, float]]) -> list[tuple[float, float]]:
-    """Return spans joined where they touch."""
-    joined: list[tuple[float, float]] = []
-    for low, high in sorted(spans):
-        if joined and low <= joined[-1][1]:
-            joined[-1] = (joined[-1][0], max(high, joined[-1][1]))
-        else:
-            joined.append((low, high))
-    return joined
 
 
 def _loads(  # noqa: C901  (three kinds of load, each a loop of its own)

@@ -13,16 +13,14 @@ from passplan.schedule.layout import misfits
 from passplan.schedule.model import Answer, Model, Solver, Values
 from passplan.schedule.outcome import outcome
 from passplan.schedule.rows_charge import charge_rows
-from passplan.schedule.rows_contacts import contact_rows
 from passplan.schedule.rows_people import people_rows
-from passplan.schedule.rows_requests import request_rows
-from passplan.schedule.rows_store import store_rows
 from passplan.schedule.steps import (
     FAIREST,
     PROVEN_GAP,
     Step,
     burden_steps,
     contacts_step,
+    duty_loads,
     fairness_rows,
     first_must,
     must_steps,
@@ -33,6 +31,7 @@ from passplan.schedule.steps import (
     worth_step,
 )
 from passplan.schedule.variables import Variables, variables
+from passplan.schedule.whole_model import build
 
 Tell = Callable[[str], None]
 
@@ -176,24 +175,6 @@ def _bound(step: Step, answer: Answer, value: float) -> float:
     return max(bound, value) if step.maximise else min(bound, value)
 
 
-def build(problem: Problem, *, charge: bool = True) -> tuple[Model, Variables]:
-    """Return the model of a problem with every row but those of the steps.
-
-    Args:
-        problem: what to write down.
-        charge: with the rows of the batteries.
-    """
-    model = Model()
-    names = variables(problem, model)
-    contact_rows(problem, model, names)
-    request_rows(problem, model, names)
-    people_rows(problem, model, names)
-    store_rows(problem, model, names)
-    if charge:
-        charge_rows(problem, model, names)
-    return model, names
-
-
 def solve(
     problem: Problem, *, time_limit_s: float = 300.0, solver: Solver = "highs", tell: Tell = lambda _: None
 ) -> Solved:
@@ -222,10 +203,10 @@ def solve(
 def _feels_charge(problem: Problem) -> bool:
     """Return whether the rows of the batteries lower the most worth with fractions allowed."""
     most = []
-    for charge in (True, False):
-        model, names = build(problem, charge=charge)
+    for left_out in (None, charge_rows):
+        model, names = build(problem, left_out=left_out)
         objective = dict(worth_step(problem, names).objective)
-        if charge:
+        if left_out is None:
             objective |= dict.fromkeys(names.short, -1.0)
         most.append(model.solve(objective, maximise=True, seconds=30.0, relaxed=True).value)
     return not most[0] >= most[1] - 1e-6 * abs(most[1])
@@ -233,7 +214,7 @@ def _feels_charge(problem: Problem) -> bool:
 
 def _chain(problem: Problem, ends: float, solver: Solver, tell: Tell, *, charge: bool) -> Solved:
     """Walk the chain on one model."""
-    model, names = build(problem, charge=charge)
+    model, names = build(problem, left_out=None if charge else charge_rows)
     chain = Chain(problem, model, names, ends, solver, tell, plain=model.copy())
     interrupted = False
     if problem.passes or problem.sessions:
@@ -358,16 +339,13 @@ def _share_out(chain: Chain) -> None:
 
 def _at_most(chain: Chain, largest: float) -> dict[int, float]:
     """Return the operators whose share is the largest, with it."""
-    problem, names, total = chain.problem, chain.names, offered_min(chain.problem)
-    loads = [0.0] * len(problem.operators)
-    for index, offered in enumerate(problem.passes):
-        for duty in offered.duties:
-            if duty.operator in names.y[index]:
-                loads[duty.operator] += duty.load_min * float(chain.held[names.y[index][duty.operator]])
+    total = offered_min(chain.problem)
     return {
         operator: largest
-        for operator, load in enumerate(loads)
-        if total[operator] and load >= (largest - 1e-6) * total[operator]
+        for operator, terms in enumerate(duty_loads(chain.problem, chain.names))
+        if total[operator]
+        and sum(minutes * float(chain.held[column]) for column, minutes in terms)
+        >= (largest - 1e-6) * total[operator]
     }
 
 

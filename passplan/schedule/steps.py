@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from passplan.domain.constants import HOUR_S
 from passplan.domain.problem import Problem
-from passplan.schedule.model import Model
+from passplan.schedule.model import Model, Term
 from passplan.schedule.rows_requests import placed
 from passplan.schedule.variables import Variables, weight_of
 
@@ -178,6 +178,16 @@ def offered_min(problem: Problem, until_s: float = math.inf) -> list[float]:
     return total
 
 
+def duty_loads(problem: Problem, names: Variables) -> list[list[Term]]:
+    """Return for each operator the duties they could take, with the minutes of each."""
+    loads: list[list[Term]] = [[] for _ in problem.operators]
+    for index, offered in enumerate(problem.passes):
+        for duty in offered.duties:
+            if duty.operator in names.y[index]:
+                loads[duty.operator].append((names.y[index][duty.operator], duty.load_min))
+    return loads
+
+
 def fairness_rows(problem: Problem, model: Model, names: Variables, fixed: dict[int, float]) -> Step:
     """Add the rows of the fairest sharing and return its step.
 
@@ -189,12 +199,7 @@ def fairness_rows(problem: Problem, model: Model, names: Variables, fixed: dict[
     """
     share = model.column(0.0, 1.0)
     total = offered_min(problem)
-    loads: list[list[tuple[int, float]]] = [[] for _ in problem.operators]
-    for index, offered in enumerate(problem.passes):
-        for duty in offered.duties:
-            if duty.operator in names.y[index]:
-                loads[duty.operator].append((names.y[index][duty.operator], duty.load_min))
-    for operator, terms in enumerate(loads):
+    for operator, terms in enumerate(duty_loads(problem, names)):
         if operator in fixed:
             model.row(terms, upper=fixed[operator] * total[operator] + 1e-6)
         elif terms:

@@ -1,9 +1,7 @@
 """Adding element sets to a workspace: one file each, and a file that is there is never touched."""
 
 import contextlib
-import os
 import re
-import tempfile
 import unicodedata
 from collections.abc import Iterator
 from dataclasses import replace
@@ -16,6 +14,7 @@ from passplan.domain.errors import InputError, PassplanError
 from passplan.workspace.element_files import element_paths, read_elements, read_file
 from passplan.workspace.omm_kvn import to_omm_kvn
 from passplan.workspace.tle_text import to_tle
+from passplan.workspace.whole_file import claim, part_in
 
 Outcome = Literal["added", "already there"]
 
@@ -83,16 +82,8 @@ def _store(folder: Path, element_set: ElementSet) -> Path:
     """Write the set under the first free name and return its path."""
     text = to_tle(element_set) if element_set.kind == "TLE" else to_omm_kvn(element_set)
     try:
-        descriptor, temporary = tempfile.mkstemp(dir=folder, prefix=".new-")
-        try:
-            with os.fdopen(descriptor, "wb") as stream:
-                stream.write(text.encode())
-                stream.flush()
-                os.fsync(stream.fileno())
-            Path(temporary).chmod(0o644)  # mkstemp gives a file to nobody else, and workspaces are shared
-            return next(path for path in _names(folder, element_set) if _claimed(temporary, path))
-        finally:
-            Path(temporary).unlink(missing_ok=True)
+        with part_in(folder, text.encode()) as part:
+            return next(path for path in _names(folder, element_set) if _claimed(part, path))
     except OSError as error:
         raise _unwritable(folder, error) from None
 
@@ -105,19 +96,12 @@ def _names(folder: Path, element_set: ElementSet) -> Iterator[Path]:
         yield first.with_stem(f"{first.stem}_{number}")
 
 
-def _claimed(temporary: str, path: Path) -> bool:
-    """Give the written file the name `path`, unless something has it; return whether it worked.
-
-    A hard link, unlike a renaming, fails when the name is taken, also by another process.
-    """
+def _claimed(part: Path, path: Path) -> bool:
+    """Give the written file the name `path`, unless something has it; return whether it worked."""
     try:
-        os.link(temporary, path)
+        claim(part, path)
     except FileExistsError:
         return False
-    except OSError:  # a file system without links, such as a memory stick's
-        if os.path.lexists(path):
-            return False
-        Path(temporary).rename(path)
     return True
 
 

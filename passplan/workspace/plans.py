@@ -1,10 +1,7 @@
 """The folder of plans: one file an edition, written whole or not at all, never overwritten."""
 
-import contextlib
 import hashlib
-import os
 import re
-import tempfile
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from datetime import datetime, timedelta
@@ -15,6 +12,7 @@ from passplan.domain.plan import IssuedPlan, Plan
 from passplan.workspace.documents import read_text
 from passplan.workspace.plan_json import from_json, load, to_json
 from passplan.workspace.register import Entered, enter, entered
+from passplan.workspace.whole_file import publish
 
 SAME_CONTACT = timedelta(minutes=20)  # an orbit takes 87 min or more, and elements never err so much
 
@@ -119,7 +117,7 @@ class PlanStore:
             raise InputError([Mistake(self._told(path), "", "", told)])
         try:
             self.home.mkdir(exist_ok=True)
-            _publish(path, content)
+            publish(path, content)
             try:
                 enter(self.home, line)
             except BaseException:
@@ -183,39 +181,6 @@ class PlanStore:
     def _told(self, path: Path) -> str:
         """Return a path as people would type it in the workspace."""
         return path.relative_to(self.folder).as_posix()
-
-
-def _publish(path: Path, content: bytes) -> None:
-    """Make `path` with `content` in one move; FileExistsError where it is there."""
-    handle, name = tempfile.mkstemp(prefix=".", suffix=".part", dir=path.parent)
-    part = Path(name)
-    try:
-        with os.fdopen(handle, "wb") as file:
-            file.write(content)
-            file.flush()
-            os.fsync(file.fileno())
-        part.chmod(0o644)
-        _link(part, path)
-    finally:
-        part.unlink(missing_ok=True)
-    # The name itself is safe on the disk only once its folder is.
-    with contextlib.suppress(OSError):
-        folder = os.open(path.parent, os.O_RDONLY)
-        try:
-            os.fsync(folder)
-        finally:
-            os.close(folder)
-
-
-def _link(part: Path, path: Path) -> None:
-    """Give `part` the name `path` unless that is taken; a link refuses where a rename would overwrite."""
-    try:
-        os.link(part, path)
-    except FileExistsError:
-        raise
-    except OSError:  # a file system without links, such as FAT: claim the name, then move over it
-        os.close(os.open(path, os.O_CREAT | os.O_EXCL | os.O_WRONLY))
-        part.replace(path)
 
 
 def _matched(known: Iterable[Numbered], wanted: Sequence[tuple[str, str, datetime]]) -> dict[int, str]:

@@ -12,7 +12,7 @@ from passplan.domain.requests import Order
 from passplan.schedule.ledger import play
 from passplan.schedule.rows_charge import idle, spans_between
 from passplan.schedule.rows_contacts import Interval, cliques
-from passplan.schedule.solve import build
+from passplan.schedule.whole_model import build
 from tests.enumerated_choices import in_order
 from tests.second_ledger import SecondLedger, stretch
 from tests.small_weeks import COMMAND, CRAFT, offer, week

@@ -12,6 +12,7 @@ import pytest
 from passplan.domain.errors import InputError
 from passplan.domain.moments import week_start
 from passplan.workspace import plans as plans_module
+from passplan.workspace import whole_file as whole_file_module
 from passplan.workspace.plan_json import to_json
 from passplan.workspace.plans import PlanStore
 from tests.workspace.plan_draws import MADE, contact, plan
@@ -107,7 +108,7 @@ def test_a_write_that_fails_leaves_nothing_behind(
         case "fsync":
             monkeypatch.setattr(os, "fsync", fail)
         case "link":
-            monkeypatch.setattr(plans_module, "_link", fail)
+            monkeypatch.setattr(whole_file_module, "claim", fail)
         case "register":
             monkeypatch.setattr(plans_module, "enter", fail)
     expected = InputError if failure == "disk full" else type(FAILURES[failure])
